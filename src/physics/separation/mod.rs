@@ -1,0 +1,1 @@
+//! Does the stream leave, or does it cling?

@@ -1,0 +1,1 @@
+//! From pour rate to the stream at the lip.

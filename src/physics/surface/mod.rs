@@ -1,0 +1,1 @@
+//! Lip materials and finishes, and how liquids wet them.
