@@ -1,0 +1,103 @@
+//! The pour rate at which a lip changes sides.
+
+use super::{
+    balance::{balance, prepare},
+    case::Case,
+};
+use crate::physics::{
+    numerics::{Bracket, find_root},
+    quantity,
+    separation::numbers::FREE_SHEET_WEBER,
+    stream::StreamFault,
+};
+
+/// Pour rates at which the lip of a case changes sides, m³/s. `None`: none in the accepted range.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct FlowLimits {
+    /// A slowing pour starts to dribble here: advancing angle, dry outer face.
+    pub onset: Option<f64>,
+    /// A wetted lip clears above this at the earliest: receding angle.
+    pub recovery: Option<f64>,
+}
+
+/// Both limits of a case.
+///
+/// # Errors
+/// When the stream cannot be computed at a pour rate on the way.
+pub fn flow_limits(case: &Case, slope_hint: f64) -> Result<FlowLimits, StreamFault> {
+    let onset = limit(case, case.advancing, slope_hint)?;
+    let recovery =
+        if case.receding == case.advancing { onset } else { limit(case, case.receding, slope_hint)? };
+    Ok(FlowLimits { onset, recovery })
+}
+
+/// Lowest pour rate above which We ≥ We_c at this contact angle and a free sheet exists (We ≥ 2).
+fn limit(case: &Case, contact_angle: f64, slope_hint: f64) -> Result<Option<f64>, StreamFault> {
+    let edge = prepare(case, contact_angle);
+    let mut fault = None;
+    let mut excess = |ln_flow: f64| match balance(case, &edge, libm::exp(ln_flow)) {
+        Ok(b) => b.ln_safety_factor.min(libm::log(b.numbers.weber / FREE_SHEET_WEBER)),
+        Err(e) => {
+            fault = Some(e);
+            f64::NAN
+        }
+    };
+    let root = rising_root(&mut excess, libm::log(case.flow), slope_hint);
+    match fault {
+        Some(e) => Err(e),
+        None => Ok(root.map(libm::exp)),
+    }
+}
+
+/// Root of a rising function of ln flow in the accepted range, looked for outward from `start` by its slope.
+fn rising_root(f: &mut impl FnMut(f64) -> f64, start: f64, slope: f64) -> Option<f64> {
+    let low_end = libm::log(quantity::FLOW.minimum * quantity::FLOW.to_si);
+    let high_end = libm::log(quantity::FLOW.maximum * quantity::FLOW.to_si);
+    let mut from = (start, f(start));
+    let slope = if slope > 0.1 { slope } else { 1.0 };
+    for _ in 0..60 {
+        if from.1 == 0.0 {
+            return Some(from.0);
+        }
+        // A step a tenth past the linear guess, so that the next point most likely brackets the root.
+        let step = -from.1 / slope * 1.1 - 1e-3 * from.1.signum();
+        let next = (from.0 + step).clamp(low_end, high_end);
+        let to = (next, f(next));
+        if !to.1.is_finite() {
+            return None;
+        }
+        if (to.1 > 0.0) != (from.1 > 0.0) || to.1 == 0.0 {
+            let (low, high) = if from.0 < to.0 { (from, to) } else { (to, from) };
+            return find_root(f, Bracket { low, high }, 1e-9);
+        }
+        if next == low_end || next == high_end {
+            return None;
+        }
+        from = to;
+    }
+    None
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn finds_a_root_far_away_with_a_poor_hint() {
+        let root = libm::log(3e-5);
+        let mut f = |x: f64| 1.7 * (x - root) + 0.3 * libm::tanh(x - root);
+        for start in [1e-8, 2.9e-5, 3e-5, 1e-2] {
+            for hint in [0.5, 1.7, 4.0, -1.0] {
+                let x = rising_root(&mut f, libm::log(start), hint).unwrap();
+                assert!((x - root).abs() < 1e-8, "{start} {hint} {x}");
+            }
+        }
+    }
+
+    #[test]
+    fn no_root_in_the_accepted_range() {
+        assert_eq!(rising_root(&mut |x| x + 100.0, libm::log(1e-5), 1.0), None);
+        assert_eq!(rising_root(&mut |x| x - 100.0, libm::log(1e-5), 1.0), None);
+        assert_eq!(rising_root(&mut |_| f64::NAN, libm::log(1e-5), 1.0), None);
+    }
+}

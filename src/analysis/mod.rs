@@ -1,0 +1,20 @@
+//! What an engineer asks: is this lip clean, by what margin, how surely, and what would mend it?
+//!
+//! A [`spec::Spec`] holds a question in the caller's units. [`spec::Spec::resolve`] turns it into a [`case::Case`] in SI units, and that is the
+//! only place where a question's faults are found. [`decision::decide`] is the one function that decides a case;
+//! [`evaluation::evaluate`] adds flows, remedies, shares and the last drop on top of it.
+
+pub mod balance;
+pub mod case;
+pub mod cautions;
+pub mod decision;
+pub mod evaluation;
+pub mod fault;
+pub mod field;
+pub mod flow_limit;
+pub mod notice;
+pub mod remedy;
+pub mod resolve;
+pub mod spec;
+pub mod uncertainty;
+pub mod warnings;
