@@ -5,4 +5,5 @@
 //! * [`physics`]: what nature does. SI units and radians; no serde, no HTTP, no async, no clock, no globals.
 #![doc(html_no_source)]
 
+pub mod analysis;
 pub mod physics;

@@ -39,6 +39,16 @@ pub fn balance(case: &Case, edge: &Edge, flow: f64) -> Result<Balance, StreamFau
     Ok(weigh(case, edge, stream, stream.thickness))
 }
 
+/// The numbers of the stream of `case` at pour rate `flow` (m³/s).
+///
+/// # Errors
+/// When the stream cannot be computed.
+pub fn film_numbers(case: &Case, flow: f64) -> Result<Numbers, StreamFault> {
+    let stream = approach_film(&case.lip.section, &case.lip.run, &case.liquid, flow)?;
+    let film = Film { thickness: stream.thickness, speed: stream.speed };
+    Ok(Numbers::of(film, &case.liquid, case.lip.edge.radius))
+}
+
 /// The balance for a stream already known, with `thickness` (m) as its equivalent sheet.
 #[must_use]
 pub fn weigh(case: &Case, edge: &Edge, stream: Stream, thickness: f64) -> Balance {

@@ -1,7 +1,7 @@
 //! The pour rate at which a lip changes sides.
 
 use super::{
-    balance::{balance, prepare},
+    balance::{balance, film_numbers, prepare},
     case::Case,
 };
 use crate::physics::{
@@ -18,29 +18,41 @@ pub struct FlowLimits {
     pub onset: Option<f64>,
     /// A wetted lip clears above this at the earliest: receding angle.
     pub recovery: Option<f64>,
+    /// Below this no free sheet can leave (We < 2), whatever the edge.
+    pub free_sheet: Option<f64>,
 }
 
-/// Both limits of a case.
+/// The limits of a case. `slope_hint`: ∂ ln(safety factor)/∂ ln flow near its pour rate.
 ///
 /// # Errors
 /// When the stream cannot be computed at a pour rate on the way.
 pub fn flow_limits(case: &Case, slope_hint: f64) -> Result<FlowLimits, StreamFault> {
-    let onset = limit(case, case.advancing, slope_hint)?;
+    let onset = separation_limit(case, case.advancing, slope_hint)?;
     let recovery =
-        if case.receding == case.advancing { onset } else { limit(case, case.receding, slope_hint)? };
-    Ok(FlowLimits { onset, recovery })
+        if case.receding == case.advancing { onset } else { separation_limit(case, case.receding, slope_hint)? };
+    // We rises with flow to the power 4/3 on a critical section.
+    let weber = |flow| film_numbers(case, flow).map(|numbers| libm::log(numbers.weber / FREE_SHEET_WEBER));
+    let free_sheet = limit(case, 4.0 / 3.0, weber)?;
+    Ok(FlowLimits { onset, recovery, free_sheet })
 }
 
-/// Lowest pour rate above which We ≥ We_c at this contact angle and a free sheet exists (We ≥ 2).
-fn limit(case: &Case, contact_angle: f64, slope_hint: f64) -> Result<Option<f64>, StreamFault> {
+/// Lowest pour rate above which We ≥ We_c at this contact angle.
+fn separation_limit(case: &Case, contact_angle: f64, slope_hint: f64) -> Result<Option<f64>, StreamFault> {
     let edge = prepare(case, contact_angle);
+    limit(case, slope_hint, |flow| balance(case, &edge, flow).map(|b| b.ln_safety_factor))
+}
+
+fn limit(
+    case: &Case,
+    slope_hint: f64,
+    excess: impl Fn(f64) -> Result<f64, StreamFault>,
+) -> Result<Option<f64>, StreamFault> {
     let mut fault = None;
-    let mut excess = |ln_flow: f64| match balance(case, &edge, libm::exp(ln_flow)) {
-        Ok(b) => b.ln_safety_factor.min(libm::log(b.numbers.weber / FREE_SHEET_WEBER)),
-        Err(e) => {
+    let mut excess = |ln_flow: f64| {
+        excess(libm::exp(ln_flow)).unwrap_or_else(|e| {
             fault = Some(e);
             f64::NAN
-        }
+        })
     };
     let root = rising_root(&mut excess, libm::log(case.flow), slope_hint);
     match fault {

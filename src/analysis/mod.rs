@@ -8,7 +8,7 @@ pub mod balance;
 pub mod case;
 pub mod cautions;
 pub mod decision;
-pub mod evaluation;
+//pub mod evaluation;
 pub mod fault;
 pub mod field;
 pub mod flow_limit;

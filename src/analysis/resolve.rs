@@ -10,7 +10,7 @@ use super::{
 use crate::physics::{
     Basis,
     lip::{Edge, Lip, Run, Section},
-    liquid::{ConditionFault, Liquid, Properties, Property},
+    liquid::{ConditionFault, Properties, Property},
     quantity::{self, DEGREE},
     surface::{
         Assumed, MeasuredAngles, MeasuredUncertainty, SurfaceFault, WettingAngles, WettingLiquid, from_energy,

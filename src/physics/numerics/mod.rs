@@ -1,7 +1,10 @@
-//! Numerical methods, only what no well-kept crate gives: a bracketing root-finder without allocation, and a portable normal distribution.
+//! Numerical methods, only what no well-kept crate gives: a bracketing root-finder and quadrature without allocation, and a portable normal
+//! distribution.
 
 mod normal;
+mod quadrature;
 mod root;
 
 pub use normal::{normal_cdf, normal_quantile};
+pub use quadrature::gauss_legendre_8;
 pub use root::{Bracket, find_root};
