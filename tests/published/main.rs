@@ -1,3 +1,5 @@
 //! Checks against the outside world: handbooks, standards, worked examples and general-purpose reference libraries.
 //! Each check names its source and basis.
 #![allow(missing_docs)]
+
+mod liquids;

@@ -24,7 +24,7 @@ struct Beverage {
     tension_range: &'static str,
 }
 
-const COMPUTED: Range = Range::of_temperature("0 to 100 °C, typical strength; measure yours", -5.0, 100.0);
+const COMPUTED: Range = Range::of_temperature("0 to 100 °C, typical strength; measure yours", 0.0, 100.0);
 
 static COFFEE: Beverage = Beverage {
     sugar: 0.0,

@@ -102,7 +102,8 @@ static CATALOGUE: &[Entry] = &[
     Entry {
         parameters: &[mass_fraction(1.0, 0.50)],
         hazards: &[Hazard::Slippery],
-        note: "Takes up water from the air: pure glycerol thins by a tenth for 0.4 % of water. Strong mixtures are taken as supercooled below their melting point.",
+        note: "Takes up water from the air: 1 % of water thins pure glycerol by a fifth. \
+               Strong mixtures are taken as supercooled below their melting point.",
         flash_point: FlashPoint::Mixture(|w| (w >= 1.0).then_some(glycerol::FLASH_POINT_C)),
         region: glycerol::region,
         evaluate: glycerol::evaluate,
@@ -339,7 +340,9 @@ mod tests {
         let w = |t, w| Conditions::at(t).with(Component::MassFraction, w);
         assert_eq!(text("water", Conditions::at(-5.0)), "it begins to freeze at 0.0 °C");
         assert_eq!(text("acetone", Conditions::at(60.0)), "it boils at 56.1 °C");
-        assert!(text("sucrose-solution", w(20.0, 0.75)).contains("no more than 0.667 dissolves (mass_fraction)"));
+        assert!(
+            text("sucrose-solution", w(20.0, 0.75)).contains("no more than 0.667 dissolves (mass_fraction)")
+        );
         assert!(text("ethanol-solution", w(-25.0, 0.2)).contains("freeze at -11.1 °C"));
         let oil = Conditions::at(20.0)
             .with(Component::Viscosity40, 10.0)

@@ -134,7 +134,11 @@ mod tests {
         source: "none",
         basis: Basis::Estimate,
         relative_uncertainty: 0.01,
-        range: Range::of_temperature("10 to 30 °C, 0 to 0.5", 10.0, 30.0).and(Component::MassFraction, 0.0, 0.5),
+        range: Range::of_temperature("10 to 30 °C, 0 to 0.5", 10.0, 30.0).and(
+            Component::MassFraction,
+            0.0,
+            0.5,
+        ),
     };
 
     fn at(t: f64, w: f64) -> (f64, bool) {

@@ -5,7 +5,7 @@ use super::correlation::Properties;
 use super::fault::ConditionFault;
 use super::hazard::{FLAMMABLE_UP_TO_C, FlashPoint, Hazard};
 use super::region::Region;
-use crate::physics::quantity::{DENSITY, SURFACE_TENSION, VISCOSITY};
+use crate::physics::quantity::{DENSITY, SURFACE_TENSION, TEMPERATURE, VISCOSITY};
 
 /// How a liquid behaves on a solid, beyond its three properties.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -86,10 +86,10 @@ impl Entry {
         self.component_faults(conditions, &mut faults);
         if !faults.is_empty() {
             // Without a valid composition only the outermost bounds of the temperature can be judged.
-            if !crate::physics::quantity::TEMPERATURE.accepts(conditions.temperature_c) {
+            if !TEMPERATURE.accepts(conditions.temperature_c) {
                 faults.push(ConditionFault::TemperatureOutOfRange {
-                    minimum_c: crate::physics::quantity::TEMPERATURE.minimum,
-                    maximum_c: crate::physics::quantity::TEMPERATURE.maximum,
+                    minimum_c: TEMPERATURE.minimum,
+                    maximum_c: TEMPERATURE.maximum,
                 });
             }
             return faults;

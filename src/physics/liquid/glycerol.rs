@@ -52,7 +52,8 @@ const SUPERCOOLED_TO_C: f64 = -20.0;
 
 /// Boiling points at one atmosphere (handbook values, from memory).
 const BOILING_W: [f64; 10] = [0.0, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9];
-const BOILING_C: [f64; 10] = [water::BOILS_AT_C, 100.9, 101.8, 102.8, 104.0, 106.0, 109.0, 113.6, 121.0, 138.0];
+const BOILING_C: [f64; 10] =
+    [water::BOILS_AT_C, 100.9, 101.8, 102.8, 104.0, 106.0, 109.0, 113.6, 121.0, 138.0];
 /// Highest temperature at which anything is computed, °C (own judgement: 50 K beyond the viscosity's range).
 const COMPUTABLE_TO_C: f64 = 150.0;
 

@@ -111,8 +111,7 @@ static PROPYLENE: Glycol = Glycol {
     },
 };
 
-const RANGE: Range =
-    Range::of_temperature("freezing to 100 °C, mass fraction up to 0.6", -60.0, 100.0);
+const RANGE: Range = Range::of_temperature("freezing to 100 °C, mass fraction up to 0.6", -60.0, 100.0);
 const DENSITY: Correlation = Correlation {
     source: "Melinder 2010",
     basis: Basis::Published,

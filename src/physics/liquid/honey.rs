@@ -33,7 +33,11 @@ const VISCOSITY: Correlation = Correlation {
     source: "fit to a published table for clover honey",
     basis: Basis::Published,
     relative_uncertainty: 0.40,
-    range: Range::of_temperature("14 to 70 °C, 16 % moisture, not crystallised; 1 % more moisture nearly halves it", 14.0, 70.0),
+    range: Range::of_temperature(
+        "14 to 70 °C, 16 % moisture, not crystallised; 1 % more moisture nearly halves it",
+        14.0,
+        70.0,
+    ),
 };
 const SURFACE_TENSION: Correlation = Correlation {
     source: "reported 50 to 60 mN/m",

@@ -18,16 +18,14 @@ pub(super) fn surface_tension(t: f64) -> f64 {
     1e-3 * (30.0 - 0.075 * (t - 20.0))
 }
 
-const DENSITY: Correlation = Correlation {
-    source: "API MPMS 11.1 / ASTM D1250, lubricating oils",
-    basis: Basis::Published,
-    relative_uncertainty: 0.005,
-    range: Range::of_temperature("-40 to 150 °C, density at 15 °C from 800 to 1164 kg/m³", -40.0, 150.0).and(
-        Component::Density15,
-        800.0,
-        1164.0,
-    ),
-};
+const DENSITY: Correlation =
+    Correlation {
+        source: "API MPMS 11.1 / ASTM D1250, lubricating oils",
+        basis: Basis::Published,
+        relative_uncertainty: 0.005,
+        range: Range::of_temperature("-40 to 150 °C, density at 15 °C from 800 to 1164 kg/m³", -40.0, 150.0)
+            .and(Component::Density15, 800.0, 1164.0),
+    };
 const VISCOSITY: Correlation = Correlation {
     source: "ASTM D341 line through the given viscosities",
     basis: Basis::Published,

@@ -48,9 +48,7 @@ impl SurfaceTension {
     fn at(&self, t: f64) -> f64 {
         match *self {
             Self::Jasper(a, b) => 1e-3 * (a - b * t),
-            Self::MuleroCachadina { s, critical, n } => {
-                s * libm::pow(1.0 - (t + CELSIUS_ZERO) / critical, n)
-            }
+            Self::MuleroCachadina { s, critical, n } => s * libm::pow(1.0 - (t + CELSIUS_ZERO) / critical, n),
         }
     }
 }

@@ -58,9 +58,9 @@ impl Region {
     /// What is wrong with this temperature, if anything.
     pub fn temperature_fault(&self, temperature_c: f64) -> Option<ConditionFault> {
         let (minimum_c, maximum_c) = self.temperatures_c();
-        let unlike = ConditionFault::TemperatureOutOfRange { minimum_c, maximum_c };
+        let outside = ConditionFault::TemperatureOutOfRange { minimum_c, maximum_c };
         if !TEMPERATURE.accepts(temperature_c) {
-            Some(unlike)
+            Some(outside)
         } else if temperature_c < minimum_c {
             Some(self.low.fault(minimum_c, maximum_c))
         } else if temperature_c > maximum_c {

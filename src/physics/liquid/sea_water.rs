@@ -24,8 +24,7 @@ pub(super) fn density(t: f64, salinity: f64) -> f64 {
 
 fn eos80(t: f64, salinity: f64) -> f64 {
     let pure = 999.842594
-        + t * (6.793952e-2
-            + t * (-9.095290e-3 + t * (1.001685e-4 + t * (-1.120083e-6 + t * 6.536332e-9))));
+        + t * (6.793952e-2 + t * (-9.095290e-3 + t * (1.001685e-4 + t * (-1.120083e-6 + t * 6.536332e-9))));
     let a = 0.824493 + t * (-4.0899e-3 + t * (7.6438e-5 + t * (-8.2467e-7 + t * 5.3875e-9)));
     let b = -5.72466e-3 + t * (1.0227e-4 + t * -1.6546e-6);
     pure + salinity * (a + b * salinity.sqrt() + 4.8314e-4 * salinity)
@@ -73,7 +72,11 @@ const VISCOSITY: Correlation = Correlation {
     source: "Sharqawy et al. 2010",
     basis: Basis::Published,
     relative_uncertainty: 0.015,
-    range: Range::of_temperature("0 to 180 °C, 0 to 150 g/kg", 0.0, 180.0).and(Component::Salinity, 0.0, 150.0),
+    range: Range::of_temperature("0 to 180 °C, 0 to 150 g/kg", 0.0, 180.0).and(
+        Component::Salinity,
+        0.0,
+        150.0,
+    ),
 };
 const SURFACE_TENSION: Correlation = Correlation {
     source: "Nayar et al. 2014",

@@ -40,9 +40,7 @@ pub(super) fn interpolate(xs: &[f64], y: impl Fn(usize) -> f64, x: f64) -> f64 {
     }
     let s = (x - xs[i]) / width;
     let r = 1.0 - s;
-    (1.0 + 2.0 * s) * r * r * y0
-        + s * r * r * width * slope0
-        + s * s * (3.0 - 2.0 * s) * y1
+    (1.0 + 2.0 * s) * r * r * y0 + s * r * r * width * slope0 + s * s * (3.0 - 2.0 * s) * y1
         - s * s * r * width * slope1
 }
 
