@@ -4,6 +4,7 @@
 //! Celsius and compositions in mass fractions, because the published correlations are). Nothing here knows of requests, of
 //! serialisation or of the time of day.
 
+pub mod last_drop;
 pub mod lip;
 pub mod liquid;
 pub mod numerics;
