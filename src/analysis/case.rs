@@ -43,6 +43,7 @@ impl Confidence {
     /// Confidence at this level.
     #[must_use]
     pub fn at(level: f64) -> Self {
+        #[expect(clippy::float_cmp_const, reason = "a shortcut for exactly the default")]
         if level == Self::DEFAULT.level {
             return Self::DEFAULT;
         }

@@ -36,9 +36,11 @@ pub struct Include {
 
 impl Include {
     /// Every part.
-    pub const ALL: Self = Self { remedies: true, contributions: true, last_drop: true, adhesion_estimate: true };
+    pub const ALL: Self =
+        Self { remedies: true, contributions: true, last_drop: true, adhesion_estimate: true };
     /// None of them.
-    pub const NONE: Self = Self { remedies: false, contributions: false, last_drop: false, adhesion_estimate: false };
+    pub const NONE: Self =
+        Self { remedies: false, contributions: false, last_drop: false, adhesion_estimate: false };
 }
 
 /// The whole answer about one lip.
@@ -90,8 +92,12 @@ pub fn evaluate(spec: &Spec, include: Include, limits: &[Limit]) -> Result<Evalu
     let numbers = &decision.balance.numbers;
     let deflection =
         deflection(numbers, case.lip.edge.turn, decision.safety_factor(), decision.standard_uncertainty);
-    let pinning =
-        pinning(&case.lip.edge, case.advancing, decision.balance.stream.thickness, case.liquid.capillary_length());
+    let pinning = pinning(
+        &case.lip.edge,
+        case.advancing,
+        decision.balance.stream.thickness,
+        case.liquid.capillary_length(),
+    );
     let remedies = include.remedies.then(|| remedies(spec, &resolved, &decision, limits));
     let evaluation = Evaluation {
         flows,

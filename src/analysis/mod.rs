@@ -2,13 +2,13 @@
 //!
 //! A [`spec::Spec`] holds a question in the caller's units. [`spec::Spec::resolve`] turns it into a [`case::Case`] in SI units, and that is the
 //! only place where a question's faults are found. [`decision::decide`] is the one function that decides a case;
-//! [`evaluation::evaluate`] adds flows, remedies, shares and the last drop on top of it.
+//! [`evaluation::evaluate`](fn@evaluation::evaluate) adds flows, remedies, shares and the last drop on top of it.
 
 pub mod balance;
 pub mod case;
 pub mod cautions;
 pub mod decision;
-//pub mod evaluation;
+pub mod evaluation;
 pub mod fault;
 pub mod field;
 pub mod flow_limit;

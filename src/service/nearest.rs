@@ -19,16 +19,29 @@ pub fn nearest<'a>(word: &str, known: impl Iterator<Item = &'a str>) -> Vec<&'a 
     ranked.into_iter().take(MOST).map(|(_, candidate)| candidate).collect()
 }
 
+/// A caller's word in quotation marks for a message, made harmless and short.
+#[must_use]
+pub fn quoted(word: &str) -> String {
+    let mut shown: String = word.chars().take(40).flat_map(char::escape_debug).collect();
+    if word.chars().nth(40).is_some() {
+        shown.push('…');
+    }
+    format!("\"{shown}\"")
+}
+
 #[cfg(test)]
 mod tests {
-    use super::nearest;
+    use super::{nearest, quoted};
 
     #[test]
     fn a_slip_of_the_finger_and_a_part_of_the_word() {
-        let known = ["water", "sea-water", "sucrose-solution", "olive-oil", "sunflower-oil", "rapeseed-oil", "milk"];
+        let known =
+            ["water", "sea-water", "sucrose-solution", "olive-oil", "sunflower-oil", "rapeseed-oil", "milk"];
         assert_eq!(nearest("watr", known.into_iter())[0], "water");
         assert_eq!(nearest("sucrose", known.into_iter())[0], "sucrose-solution");
         assert_eq!(nearest("Olive_Oil", known.into_iter())[0], "olive-oil");
+        assert_eq!(quoted("a\"b\n"), "\"a\\\"b\\n\"");
+        assert!(quoted(&"x".repeat(1_000_000)).len() < 60);
         assert_eq!(nearest(&"x".repeat(1_000_000), known.into_iter()).len(), 5);
     }
 }

@@ -1,6 +1,8 @@
 //! The lip in a request.
 
-use super::quantity::{EdgeRadius, IncludedAngle, RunLength, RunSlope, SheetWidth, TroughDiameter, TubeBore, Turn};
+use super::quantity::{
+    EdgeRadius, IncludedAngle, RunLength, RunSlope, SheetWidth, TroughDiameter, TubeBore, Turn,
+};
 use crate::analysis::spec::SectionSpec;
 use serde::{Deserialize, Serialize};
 use utoipa::ToSchema;

@@ -1,8 +1,8 @@
 //! The liquid in a request.
 
 use super::quantity::{
-    Density, Density15, Fat, KinematicViscosity40, KinematicViscosity100, MassFraction, Salinity, SurfaceTension,
-    Temperature, Viscosity, given,
+    Density, Density15, Fat, KinematicViscosity40, KinematicViscosity100, MassFraction, Salinity,
+    SurfaceTension, Temperature, Viscosity, given,
 };
 use crate::{
     analysis::{
@@ -10,7 +10,7 @@ use crate::{
         spec::{LiquidSpec, Overrides},
     },
     physics::liquid::{Conditions, catalogue, find},
-    service::nearest::nearest,
+    service::nearest::{nearest, quoted},
 };
 use serde::{Deserialize, Serialize};
 use utoipa::ToSchema;
@@ -103,8 +103,8 @@ impl LiquidRequest {
             Self::Catalogue(liquid) => LiquidSpec::Catalogue {
                 entry: find(&liquid.id).ok_or_else(|| {
                     let detail = format!(
-                        "the catalogue has no liquid \"{}\"; GET /v1/liquids lists them",
-                        liquid.id.escape_debug()
+                        "the catalogue has no liquid {}; GET /v1/liquids lists them",
+                        quoted(&liquid.id)
                     );
                     Fault::new(format!("{at}/catalogue/id"), "unknown_id", detail)
                         .choices(nearest(&liquid.id, catalogue().iter().map(|entry| entry.id)))

@@ -22,7 +22,11 @@ fn number<'de, D: Deserializer<'de>>(deserializer: D, quantity: &Quantity) -> Re
         }
 
         fn visit_f64<E: de::Error>(self, value: f64) -> Result<f64, E> {
-            if self.0.accepts(value) { Ok(value) } else { Err(E::invalid_value(de::Unexpected::Float(value), &self)) }
+            if self.0.accepts(value) {
+                Ok(value)
+            } else {
+                Err(E::invalid_value(de::Unexpected::Float(value), &self))
+            }
         }
 
         fn visit_u64<E: de::Error>(self, value: u64) -> Result<f64, E> {
@@ -178,7 +182,9 @@ impl ToSchema for Number {
 }
 
 /// Reads a member that may be left out but, when given, must be a `T`: `null` is no value.
-pub(super) fn given<'de, D: Deserializer<'de>, T: Deserialize<'de>>(deserializer: D) -> Result<Option<T>, D::Error> {
+pub(super) fn given<'de, D: Deserializer<'de>, T: Deserialize<'de>>(
+    deserializer: D,
+) -> Result<Option<T>, D::Error> {
     T::deserialize(deserializer).map(Some)
 }
 

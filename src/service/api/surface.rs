@@ -4,7 +4,7 @@ use super::quantity::{ContactAngle, RoughnessRatio, SurfaceEnergy, given};
 use crate::{
     analysis::{fault::Fault, spec::SurfaceSpec},
     physics::surface::{State, catalogue, find},
-    service::nearest::nearest,
+    service::nearest::{nearest, quoted},
 };
 use serde::{Deserialize, Serialize};
 use utoipa::ToSchema;
@@ -28,19 +28,17 @@ pub struct CatalogueSurface {
     /// Identifier, as in `GET /v1/surfaces`.
     #[schema(example = "porcelain-glazed")]
     pub id: String,
-    /// Its state; default `in_use`.
-    #[serde(default)]
+    /// Its state; `GET /v1/surfaces` says which states are known.
     pub state: StateRequest,
 }
 
 /// The state of a surface.
-#[derive(Debug, Clone, Copy, PartialEq, Eq, Default, Deserialize, Serialize, ToSchema)]
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Deserialize, Serialize, ToSchema)]
 #[serde(rename_all = "snake_case")]
 pub enum StateRequest {
     /// As made, or freshly cleaned.
     Clean,
     /// Washed, handled or aged in air.
-    #[default]
     InUse,
     /// Worn or fouled.
     Worn,
@@ -107,7 +105,7 @@ impl SurfaceRequest {
                     Fault::new(
                         format!("{at}/catalogue/id"),
                         "unknown_id",
-                        format!("the catalogue has no surface \"{}\"; GET /v1/surfaces lists them", id.escape_debug()),
+                        format!("the catalogue has no surface {}; GET /v1/surfaces lists them", quoted(id)),
                     )
                     .choices(nearest(id, catalogue().iter().map(|m| m.id)))
                 })?;

@@ -1,24 +1,19 @@
 //! The evaluation answer.
 
-use std::{borrow::Cow, collections::BTreeMap};
+use std::collections::BTreeMap;
 
 use serde::Serialize;
 use utoipa::ToSchema;
 
 use crate::{
     analysis::{
-        case::Confidence,
-        evaluation::Evaluation,
-        field::Field,
-        notice::Notice,
-        remedy::Remedy,
-        spec::Spec,
+        case::Confidence, evaluation::Evaluation, field::Field, notice::Notice, remedy::Remedy, spec::Spec,
         uncertainty::standard_uncertainty,
     },
     physics::{
         liquid::Property,
         quantity::{self, DEGREE, Quantity},
-        surface::AngleEstimate,
+        stream::Control,
     },
     service::{
         api::{
@@ -363,8 +358,16 @@ fn stream(evaluation: &Evaluation) -> StreamAnswer {
         capillary: Number(numbers.capillary),
         brink_thickness_mm: millimetres(stream.brink_thickness),
         brink_speed_m_s: Number(stream.brink_speed),
-        control: stream.control.as_str(),
+        control: control(stream.control),
         regime: numbers.regime().as_str(),
+    }
+}
+
+fn control(control: Control) -> &'static str {
+    match control {
+        Control::Crest => "crest",
+        Control::Brink => "brink",
+        Control::Full => "full",
     }
 }
 

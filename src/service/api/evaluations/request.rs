@@ -1,6 +1,6 @@
 //! The evaluation request. Members stand in alphabetical order, so that what serde writes is already in RFC 8785 order.
 
-use std::collections::BTreeMap;
+use std::{collections::BTreeMap, sync::OnceLock};
 
 use serde::{Deserialize, Serialize};
 use utoipa::ToSchema;
@@ -21,7 +21,7 @@ use crate::{
             quantity::{Confidence, Flow, given},
             surface::SurfaceRequest,
         },
-        explain::{Request, escaped},
+        explain::{Contract, Request, escaped},
         nearest::{nearest, quoted},
     },
 };
@@ -133,7 +133,12 @@ const fn default_confidence() -> Confidence {
 }
 
 fn all_parts() -> Vec<PartRequest> {
-    vec![PartRequest::Remedies, PartRequest::Contributions, PartRequest::LastDrop, PartRequest::AdhesionEstimate]
+    vec![
+        PartRequest::Remedies,
+        PartRequest::Contributions,
+        PartRequest::LastDrop,
+        PartRequest::AdhesionEstimate,
+    ]
 }
 
 /// A realistic request.
@@ -233,8 +238,10 @@ impl EvaluationRequest {
             let before = faults.len();
             for (member, value) in [("minimum", minimum), ("maximum", maximum)] {
                 if !quantity.accepts(value) {
-                    let detail =
-                        format!("must be between {} and {} {}", quantity.minimum, quantity.maximum, quantity.unit);
+                    let detail = format!(
+                        "must be between {} and {} {}",
+                        quantity.minimum, quantity.maximum, quantity.unit
+                    );
                     let fault = Fault::new(format!("{at}/{member}"), "out_of_range", detail.trim_end());
                     faults.push(fault.within(quantity.minimum, quantity.maximum));
                 }
@@ -252,6 +259,11 @@ impl EvaluationRequest {
 impl Request for EvaluationRequest {
     fn sound() -> &'static str {
         EXAMPLE
+    }
+
+    fn contract() -> &'static OnceLock<Contract> {
+        static CONTRACT: OnceLock<Contract> = OnceLock::new();
+        &CONTRACT
     }
 
     fn faults(&self) -> Vec<Fault> {

@@ -1,0 +1,99 @@
+//! The OpenAPI document's common parts: what holds for every operation is added here, once.
+
+use utoipa::openapi::path::{Operation, PathItem};
+use utoipa::openapi::security::{HttpAuthScheme, HttpBuilder, SecurityRequirement, SecurityScheme};
+use utoipa::openapi::{ContentBuilder, OpenApi, Ref, RefOr, Response, ResponseBuilder, Server};
+use utoipa::{OpenApi as _, ToSchema};
+
+use super::problem::{PROBLEM_JSON, ProblemDocument, ProblemKind};
+
+#[derive(utoipa::OpenApi)]
+#[openapi(
+    info(
+        title = "dribble-risk",
+        description = "Tells people who make things that pour whether a lip will dribble, how surely, and what to change.\n\nEvery physical number carries its unit in its name. Every failure is a problem document (RFC 9457); `errors` lists all faults found, each with a JSON Pointer to the field."
+    ),
+    components(schemas(ProblemDocument))
+)]
+struct Ground;
+
+/// The document before any resource is added.
+pub(super) fn ground() -> OpenApi {
+    Ground::openapi()
+}
+
+/// Adds what every operation shares: problem responses, the optional bearer token, the server's base path.
+pub(super) fn complete(document: &mut OpenApi, base_path: &str) {
+    let server = if base_path.is_empty() { "/" } else { base_path };
+    document.servers = Some(vec![Server::new(server)]);
+    let components = document.components.get_or_insert_default();
+    for kind in ProblemKind::ALL {
+        components.responses.insert(component(kind), RefOr::T(response(kind.title())));
+    }
+    components.responses.insert("Problem".into(), RefOr::T(response("Any other failure")));
+    components.add_security_scheme(
+        "bearer",
+        SecurityScheme::Http(
+            HttpBuilder::new()
+                .scheme(HttpAuthScheme::Bearer)
+                .description(Some("Asked for only by servers that were given a list of tokens"))
+                .build(),
+        ),
+    );
+    for (path, item) in &mut document.paths.paths {
+        for operation in operations(item) {
+            add_problems(path, operation);
+        }
+    }
+}
+
+fn operations(item: &mut PathItem) -> impl Iterator<Item = &mut Operation> {
+    [&mut item.get, &mut item.head, &mut item.post, &mut item.put, &mut item.patch, &mut item.delete]
+        .into_iter()
+        .flatten()
+}
+
+fn add_problems(path: &str, operation: &mut Operation) {
+    use ProblemKind as Kind;
+    let mut kinds = vec![Kind::NotAcceptable, Kind::Internal, Kind::Overloaded, Kind::TimedOut];
+    if path.starts_with("/v1") {
+        kinds.push(Kind::Unauthorized);
+        operation.security =
+            Some(vec![SecurityRequirement::default(), SecurityRequirement::new("bearer", [] as [&str; 0])]);
+    }
+    if operation.request_body.is_some() {
+        kinds.extend([
+            Kind::NotJson,
+            Kind::SlowRequest,
+            Kind::TooLarge,
+            Kind::UnsupportedMediaType,
+            Kind::InvalidRequest,
+        ]);
+    }
+    if path.contains('{') {
+        kinds.push(Kind::NotFound);
+    }
+    let responses = &mut operation.responses.responses;
+    for kind in kinds {
+        let status = kind.status().as_str().to_owned();
+        responses.entry(status).or_insert_with(|| reference(&component(kind)));
+    }
+    responses.entry("default".into()).or_insert_with(|| reference("Problem"));
+}
+
+fn reference(component: &str) -> RefOr<Response> {
+    RefOr::Ref(Ref::from_response_name(component))
+}
+
+/// The name of the component: the slug in the manner of schema names, e.g. `InvalidRequest`.
+fn component(kind: ProblemKind) -> String {
+    format!("{kind:?}")
+}
+
+fn response(description: &str) -> Response {
+    let schema = RefOr::Ref(Ref::from_schema_name(ProblemDocument::name()));
+    ResponseBuilder::new()
+        .description(description)
+        .content(PROBLEM_JSON, ContentBuilder::new().schema(Some(schema)).build())
+        .build()
+}

@@ -1,0 +1,129 @@
+//! The fingerprint of a result: which request, answered by which model, from which catalogue.
+
+use std::{fmt::Write as _, io, sync::OnceLock};
+
+use serde::Serialize;
+use serde_json::ser::Formatter;
+use sha2::{Digest, Sha256};
+use utoipa::ToSchema;
+
+use crate::physics::{liquid, surface};
+
+/// What computed an answer.
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, ToSchema)]
+pub struct ModelAnswer {
+    /// Version of the service and its models.
+    #[schema(example = "0.1.0")]
+    pub version: &'static str,
+    /// Coefficient set of the closed form.
+    #[schema(example = "set-1")]
+    pub coefficients: &'static str,
+    /// SHA-256 over the canonical request (RFC 8785, defaults filled in), the model version and the catalogue's digest.
+    pub fingerprint: String,
+}
+
+/// The version of the service and its models.
+pub const VERSION: &str = env!("CARGO_PKG_VERSION");
+
+impl ModelAnswer {
+    /// The model that answered `request`, a request with its defaults filled in and its members in canonical order.
+    #[must_use]
+    pub fn of<T: Serialize>(request: &T, coefficients: &'static str) -> Self {
+        let mut hash = Hasher(Sha256::new());
+        // Writing into a hash cannot fail, and a request is made of strings, lists and finite numbers.
+        let _ = request.serialize(&mut serde_json::Serializer::with_formatter(&mut hash, Canonical));
+        let Hasher(mut hash) = hash;
+        hash.update([0]);
+        hash.update(VERSION);
+        hash.update([0]);
+        hash.update(catalogue_digest());
+        Self { version: VERSION, coefficients, fingerprint: hexadecimal(&hash.finalize()) }
+    }
+}
+
+/// SHA-256 over everything the catalogue says of liquids and surfaces.
+pub fn catalogue_digest() -> &'static str {
+    static DIGEST: OnceLock<String> = OnceLock::new();
+    DIGEST.get_or_init(|| {
+        let mut hash = Sha256::new();
+        for entry in liquid::catalogue() {
+            hash.update(entry.id);
+            // Correlations are code: what they give at the corners and the middle of their region stands for them.
+            for sample in super::api::liquids::samples(entry) {
+                for number in sample {
+                    hash.update(number.to_bits().to_be_bytes());
+                }
+            }
+        }
+        for material in surface::catalogue() {
+            hash.update(format!("{material:?}"));
+        }
+        hexadecimal(&hash.finalize())
+    })
+}
+
+fn hexadecimal(bytes: &[u8]) -> String {
+    bytes.iter().fold(String::with_capacity(2 * bytes.len()), |mut text, byte| {
+        let _ = write!(text, "{byte:02x}");
+        text
+    })
+}
+
+struct Hasher(Sha256);
+
+impl io::Write for Hasher {
+    fn write(&mut self, bytes: &[u8]) -> io::Result<usize> {
+        self.0.update(bytes);
+        Ok(bytes.len())
+    }
+
+    fn flush(&mut self) -> io::Result<()> {
+        Ok(())
+    }
+}
+
+/// Numbers as RFC 8785 wants them: as ECMAScript writes them. (Strings already are: serde_json escapes what it must, in lower case, and no more.)
+struct Canonical;
+
+impl Formatter for Canonical {
+    fn write_f64<W: ?Sized + io::Write>(&mut self, writer: &mut W, value: f64) -> io::Result<()> {
+        writer.write_all(ryu_js::Buffer::new().format_finite(value).as_bytes())
+    }
+}
+
+/// The canonical form (RFC 8785) of what serde writes in canonical order.
+#[cfg(test)]
+fn canonical<T: Serialize>(value: &T) -> String {
+    let mut bytes = Vec::new();
+    value.serialize(&mut serde_json::Serializer::with_formatter(&mut bytes, Canonical)).unwrap();
+    String::from_utf8(bytes).unwrap()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::service::{api::evaluations::EvaluationRequest, explain::Request as _};
+
+    #[test]
+    fn requests_serialise_in_canonical_form() {
+        let request: EvaluationRequest = serde_json::from_str(EvaluationRequest::sound()).unwrap();
+        let ours = canonical(&request);
+        let theirs = serde_json_canonicalizer::to_string(&serde_json::to_value(&request).unwrap()).unwrap();
+        assert_eq!(ours, theirs);
+        assert!(ours.starts_with(r#"{"coefficients":"set-1","confidence":0.95,"include":["#), "{ours}");
+    }
+
+    #[test]
+    fn defaults_filled_in_or_given_make_the_same_fingerprint() {
+        let text = EvaluationRequest::sound();
+        let plain: EvaluationRequest = serde_json::from_str(text).unwrap();
+        let spelled =
+            text.replacen('{', r#"{"method": "closed_form", "outer_face": "dry", "confidence": 0.950,"#, 1);
+        let spelled: EvaluationRequest = serde_json::from_str(&spelled).unwrap();
+        let of = |request: &EvaluationRequest| ModelAnswer::of(request, "set-1").fingerprint;
+        assert_eq!(of(&plain), of(&spelled));
+        assert_eq!(of(&plain).len(), 64);
+        let other: EvaluationRequest = serde_json::from_str(&text.replace("25}", "26}")).unwrap();
+        assert_ne!(of(&plain), of(&other));
+    }
+}

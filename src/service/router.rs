@@ -1,0 +1,58 @@
+//! Every resource of the service, as one list.
+
+use std::sync::Arc;
+
+use axum::Router;
+use utoipa::openapi::OpenApi;
+use utoipa_axum::router::OpenApiRouter;
+use utoipa_axum::routes;
+
+use super::api::{docs, evaluations, health, metrics, problems, version};
+use super::contract;
+use super::layers::House;
+use super::state::Shared;
+use super::telemetry;
+
+/// The list. A handler's name is its operation id.
+fn resources() -> OpenApiRouter<Shared> {
+    OpenApiRouter::with_openapi(contract::ground())
+        .routes(routes!(evaluations::evaluate))
+        .routes(routes!(health::live))
+        .routes(routes!(health::ready))
+        .routes(routes!(metrics::metrics))
+        .routes(routes!(version::version))
+        .routes(routes!(problems::list_problems))
+        .routes(routes!(problems::explain_problem))
+}
+
+/// The service as a router, testable without a socket.
+pub fn app(state: &Shared) -> Router {
+    app_with(state, Router::new())
+}
+
+/// The service with more routes under its base path: for tests, and for programs that embed it.
+pub fn app_with(state: &Shared, more: Router<Shared>) -> Router {
+    // Meters are kept once handed out, so the recorder must be there before the first request.
+    telemetry::metrics_handle();
+    let base_path = state.settings.base_path.as_str();
+    let (resources, document) = described(base_path);
+    let document = Arc::new(docs::Contract::new(&document));
+    let inside = resources.merge(docs::routes(&document, base_path)).merge(more);
+    let whole = if base_path.is_empty() { inside } else { Router::new().nest(base_path, inside) };
+    whole.layer(House::new(state.clone())).with_state(state.clone())
+}
+
+fn described(base_path: &str) -> (Router<Shared>, OpenApi) {
+    let (resources, mut document) = resources().split_for_parts();
+    contract::complete(&mut document, base_path);
+    (resources, document)
+}
+
+/// The OpenAPI document of a service at the root, as committed in `openapi/openapi.json`.
+///
+/// # Errors
+/// None in practice: the document is made of strings, numbers and lists.
+pub fn openapi_json() -> Result<String, serde_json::Error> {
+    let (_, document) = described("");
+    document.to_pretty_json().map(|text| text + "\n")
+}
