@@ -45,7 +45,10 @@ pub fn cautions(spec: &Spec, liquid: &Properties) -> Vec<Notice> {
         }
     }
     if !found.iter().any(|n| n.code == Hazard::Slippery.code()) {
-        found.push(Notice::new(Hazard::Slippery.code(), "What dribbles ends on a floor: any spill can make it slippery."));
+        found.push(Notice::new(
+            Hazard::Slippery.code(),
+            "What dribbles ends on a floor: any spill can make it slippery.",
+        ));
     }
     found
 }
@@ -55,7 +58,9 @@ pub fn cautions(spec: &Spec, liquid: &Properties) -> Vec<Notice> {
 pub fn notice(hazard: Hazard, pointer: &'static str) -> Notice {
     let what = match hazard {
         Hazard::Scald => "Hot enough to scald: a dribble runs towards the hand that pours.",
-        Hazard::Flammable => "Gives off vapour that can be ignited: keep away from flames, sparks and static charge.",
+        Hazard::Flammable => {
+            "Gives off vapour that can be ignited: keep away from flames, sparks and static charge."
+        }
         Hazard::Combustible => "Burns once well heated: keep away from flames and hot surfaces.",
         Hazard::Corrosive => "Attacks skin, eyes or materials: a dribble must not reach the hand.",
         Hazard::Irritant => "Irritates eyes or skin.",

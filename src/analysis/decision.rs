@@ -117,7 +117,8 @@ pub fn decide(case: &Case) -> Result<Decision, StreamFault> {
         reach,
         slopes,
     };
-    decision.standard_uncertainty = decision.variances(case).map(|(_, variance)| variance).sum::<f64>().sqrt();
+    decision.standard_uncertainty =
+        decision.variances(case).map(|(_, variance)| variance).sum::<f64>().sqrt();
     decision.dribble_probability = normal_cdf(-decision.margin / decision.standard_uncertainty);
     decision.verdict = verdict(decision.dribble_probability, case.confidence.level, decision.free_sheet());
     Ok(decision)

@@ -87,16 +87,8 @@ const TABLE: &[(Field, &str, Quantity)] = &[
     (Field::MassFraction, "/liquid/catalogue/mass_fraction", quantity::MASS_FRACTION),
     (Field::Salinity, "/liquid/catalogue/salinity_g_kg", quantity::SALINITY),
     (Field::Fat, "/liquid/catalogue/fat_percent", quantity::FAT),
-    (
-        Field::Viscosity40,
-        "/liquid/catalogue/viscosity_40c_mm2_s",
-        quantity::KINEMATIC_VISCOSITY_40,
-    ),
-    (
-        Field::Viscosity100,
-        "/liquid/catalogue/viscosity_100c_mm2_s",
-        quantity::KINEMATIC_VISCOSITY_100,
-    ),
+    (Field::Viscosity40, "/liquid/catalogue/viscosity_40c_mm2_s", quantity::KINEMATIC_VISCOSITY_40),
+    (Field::Viscosity100, "/liquid/catalogue/viscosity_100c_mm2_s", quantity::KINEMATIC_VISCOSITY_100),
     (Field::Density15, "/liquid/catalogue/density_15c_kg_m3", quantity::DENSITY_15),
     (Field::DensityOverride, "/liquid/catalogue/density_kg_m3", quantity::DENSITY),
     (Field::ViscosityOverride, "/liquid/catalogue/viscosity_mpa_s", quantity::VISCOSITY),
@@ -184,26 +176,50 @@ impl Field {
             (F::Slope, ..) => Required(&mut spec.slope_deg),
             (F::RunLength, ..) => Required(&mut spec.length_mm),
             (F::Flow, ..) => Required(&mut spec.flow_ml_s),
-            (F::MeasuredContact, _, SurfaceSpec::Measured { contact_angle_deg, .. }, _) => Optional(contact_angle_deg),
-            (F::MeasuredAdvancing, _, SurfaceSpec::Measured { advancing_deg, .. }, _) => Optional(advancing_deg),
+            (F::MeasuredContact, _, SurfaceSpec::Measured { contact_angle_deg, .. }, _) => {
+                Optional(contact_angle_deg)
+            }
+            (F::MeasuredAdvancing, _, SurfaceSpec::Measured { advancing_deg, .. }, _) => {
+                Optional(advancing_deg)
+            }
             (F::MeasuredReceding, _, SurfaceSpec::Measured { receding_deg, .. }, _) => Optional(receding_deg),
-            (F::Dispersive, _, SurfaceSpec::Estimated { dispersive_mn_m, .. }, _) => Required(dispersive_mn_m),
+            (F::Dispersive, _, SurfaceSpec::Estimated { dispersive_mn_m, .. }, _) => {
+                Required(dispersive_mn_m)
+            }
             (F::Polar, _, SurfaceSpec::Estimated { polar_mn_m, .. }, _) => Required(polar_mn_m),
             (F::Roughness, _, SurfaceSpec::Estimated { roughness_ratio, .. }, _) => Required(roughness_ratio),
-            (F::Temperature, _, _, LiquidSpec::Catalogue { conditions, .. }) => Required(&mut conditions.temperature_c),
-            (F::MassFraction, _, _, LiquidSpec::Catalogue { conditions, .. }) => Optional(&mut conditions.mass_fraction),
-            (F::Salinity, _, _, LiquidSpec::Catalogue { conditions, .. }) => Optional(&mut conditions.salinity_g_kg),
+            (F::Temperature, _, _, LiquidSpec::Catalogue { conditions, .. }) => {
+                Required(&mut conditions.temperature_c)
+            }
+            (F::MassFraction, _, _, LiquidSpec::Catalogue { conditions, .. }) => {
+                Optional(&mut conditions.mass_fraction)
+            }
+            (F::Salinity, _, _, LiquidSpec::Catalogue { conditions, .. }) => {
+                Optional(&mut conditions.salinity_g_kg)
+            }
             (F::Fat, _, _, LiquidSpec::Catalogue { conditions, .. }) => Optional(&mut conditions.fat_percent),
-            (F::Viscosity40, _, _, LiquidSpec::Catalogue { conditions, .. }) => Optional(&mut conditions.viscosity_40c_mm2_s),
-            (F::Viscosity100, _, _, LiquidSpec::Catalogue { conditions, .. }) => Optional(&mut conditions.viscosity_100c_mm2_s),
-            (F::Density15, _, _, LiquidSpec::Catalogue { conditions, .. }) => Optional(&mut conditions.density_15c_kg_m3),
-            (F::DensityOverride, _, _, LiquidSpec::Catalogue { overrides, .. }) => Optional(&mut overrides.density_kg_m3),
-            (F::ViscosityOverride, _, _, LiquidSpec::Catalogue { overrides, .. }) => Optional(&mut overrides.viscosity_mpa_s),
+            (F::Viscosity40, _, _, LiquidSpec::Catalogue { conditions, .. }) => {
+                Optional(&mut conditions.viscosity_40c_mm2_s)
+            }
+            (F::Viscosity100, _, _, LiquidSpec::Catalogue { conditions, .. }) => {
+                Optional(&mut conditions.viscosity_100c_mm2_s)
+            }
+            (F::Density15, _, _, LiquidSpec::Catalogue { conditions, .. }) => {
+                Optional(&mut conditions.density_15c_kg_m3)
+            }
+            (F::DensityOverride, _, _, LiquidSpec::Catalogue { overrides, .. }) => {
+                Optional(&mut overrides.density_kg_m3)
+            }
+            (F::ViscosityOverride, _, _, LiquidSpec::Catalogue { overrides, .. }) => {
+                Optional(&mut overrides.viscosity_mpa_s)
+            }
             (F::SurfaceTensionOverride, _, _, LiquidSpec::Catalogue { overrides, .. }) => {
                 Optional(&mut overrides.surface_tension_mn_m)
             }
             (F::MeasuredDensity, _, _, LiquidSpec::Measured { density_kg_m3, .. }) => Required(density_kg_m3),
-            (F::MeasuredViscosity, _, _, LiquidSpec::Measured { viscosity_mpa_s, .. }) => Required(viscosity_mpa_s),
+            (F::MeasuredViscosity, _, _, LiquidSpec::Measured { viscosity_mpa_s, .. }) => {
+                Required(viscosity_mpa_s)
+            }
             (F::MeasuredSurfaceTension, _, _, LiquidSpec::Measured { surface_tension_mn_m, .. }) => {
                 Required(surface_tension_mn_m)
             }

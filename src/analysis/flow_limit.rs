@@ -28,8 +28,11 @@ pub struct FlowLimits {
 /// When the stream cannot be computed at a pour rate on the way.
 pub fn flow_limits(case: &Case, slope_hint: f64) -> Result<FlowLimits, StreamFault> {
     let onset = separation_limit(case, case.advancing, slope_hint)?;
-    let recovery =
-        if case.receding == case.advancing { onset } else { separation_limit(case, case.receding, slope_hint)? };
+    let recovery = if case.receding == case.advancing {
+        onset
+    } else {
+        separation_limit(case, case.receding, slope_hint)?
+    };
     // We rises with flow to the power 4/3 on a critical section.
     let weber = |flow| film_numbers(case, flow).map(|numbers| libm::log(numbers.weber / FREE_SHEET_WEBER));
     let free_sheet = limit(case, 4.0 / 3.0, weber)?;

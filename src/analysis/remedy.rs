@@ -126,19 +126,28 @@ fn ordinary_bounds(field: Field, from: f64) -> (f64, f64) {
 fn reason(field: Field) -> Notice {
     let (code, detail) = match field {
         Field::EdgeRadius => ("sharpen_edge", "A sharper edge leaves less wall for the stream to follow."),
-        Field::Turn => ("turn_further", "An outer wall that turns further back (an undercut) asks more of the liquid that would follow it."),
+        Field::Turn => (
+            "turn_further",
+            "An outer wall that turns further back (an undercut) asks more of the liquid that would follow it.",
+        ),
         Field::Slope => ("steepen_floor", "A steeper floor before the edge speeds the stream up."),
-        Field::RunLength => ("lengthen_floor", "A longer downhill floor speeds the stream up before the edge."),
+        Field::RunLength => {
+            ("lengthen_floor", "A longer downhill floor speeds the stream up before the edge.")
+        }
         Field::SheetWidth | Field::TroughDiameter | Field::TubeBore => {
             ("narrow_section", "A narrower section makes the same pour thicker and faster at the edge.")
         }
-        Field::VeeAngle => ("pinch_section", "A tighter pinch makes the same pour thicker and faster at the edge."),
-        Field::MeasuredAdvancing => {
-            ("finish_with_larger_advancing_angle", "A finish with a larger advancing angle, measured with this liquid, is wetted less readily.")
+        Field::VeeAngle => {
+            ("pinch_section", "A tighter pinch makes the same pour thicker and faster at the edge.")
         }
-        Field::MeasuredReceding => {
-            ("finish_with_larger_receding_angle", "A finish with a larger receding angle, measured with this liquid, lets go more readily once wet.")
-        }
+        Field::MeasuredAdvancing => (
+            "finish_with_larger_advancing_angle",
+            "A finish with a larger advancing angle, measured with this liquid, is wetted less readily.",
+        ),
+        Field::MeasuredReceding => (
+            "finish_with_larger_receding_angle",
+            "A finish with a larger receding angle, measured with this liquid, lets go more readily once wet.",
+        ),
         _ => ("pour_faster", "A faster pour carries more inertia over the edge."),
     };
     Notice::new(code, detail)

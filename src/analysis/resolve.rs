@@ -13,8 +13,8 @@ use crate::physics::{
     liquid::{ConditionFault, Properties, Property},
     quantity::{self, DEGREE},
     surface::{
-        Assumed, MeasuredAngles, MeasuredUncertainty, SurfaceFault, WettingAngles, WettingLiquid, from_energy,
-        from_measured,
+        Assumed, MeasuredAngles, MeasuredUncertainty, SurfaceFault, WettingAngles, WettingLiquid,
+        from_energy, from_measured,
     },
 };
 
@@ -81,7 +81,9 @@ impl Spec {
             faults.push(slope.within(-self.turn_deg, quantity::RUN_SLOPE.maximum));
         }
         let section = match self.section {
-            SectionSpec::Sheet { width_mm } => Section::Sheet { width: width_mm * quantity::SHEET_WIDTH.to_si },
+            SectionSpec::Sheet { width_mm } => {
+                Section::Sheet { width: width_mm * quantity::SHEET_WIDTH.to_si }
+            }
             SectionSpec::Vee { included_angle_deg } => {
                 Section::Vee { included_angle: included_angle_deg * quantity::INCLUDED_ANGLE.to_si }
             }
@@ -112,9 +114,8 @@ impl Spec {
         match self.surface {
             SurfaceSpec::Measured { contact_angle_deg, advancing_deg, receding_deg } => {
                 let radians = |degrees: Option<f64>| degrees.map(|d| d * DEGREE);
-                let uncertainty = |field: Field| {
-                    standard_uncertainty(self, field, field.get(self).unwrap_or(0.0)) * DEGREE
-                };
+                let uncertainty =
+                    |field: Field| standard_uncertainty(self, field, field.get(self).unwrap_or(0.0)) * DEGREE;
                 let angles = MeasuredAngles {
                     contact: radians(contact_angle_deg),
                     advancing: radians(advancing_deg),
@@ -137,14 +138,18 @@ impl Spec {
                         "state_unknown",
                         format!("{} has no values in this state", material.id),
                     );
-                    let known = crate::physics::surface::State::ALL.into_iter().filter(|s| material.state(*s).is_some());
+                    let known = crate::physics::surface::State::ALL
+                        .into_iter()
+                        .filter(|s| material.state(*s).is_some());
                     faults.push(fault.choices(known.map(crate::physics::surface::State::as_str)));
                     return None;
                 }
                 material
                     .angles(state, liquid?)
                     .map(|angles| (angles, none_assumed))
-                    .map_err(|fault| faults.push(Fault::new("/surface/catalogue", "not_applicable", fault.to_string())))
+                    .map_err(|fault| {
+                        faults.push(Fault::new("/surface/catalogue", "not_applicable", fault.to_string()))
+                    })
                     .ok()
             }
             SurfaceSpec::Estimated { dispersive_mn_m, polar_mn_m, roughness_ratio } => {
@@ -174,8 +179,12 @@ impl Spec {
         let angle_source = match (self.surface, self.outer_face) {
             (SurfaceSpec::Catalogue { .. }, _) => Source::CatalogueSurface,
             (SurfaceSpec::Estimated { .. }, _) => Source::EstimatedSurface,
-            (SurfaceSpec::Measured { .. }, OuterFace::Dry) if !assumed.advancing => Source::Field(Field::MeasuredAdvancing),
-            (SurfaceSpec::Measured { .. }, OuterFace::Wet) if !assumed.receding => Source::Field(Field::MeasuredReceding),
+            (SurfaceSpec::Measured { .. }, OuterFace::Dry) if !assumed.advancing => {
+                Source::Field(Field::MeasuredAdvancing)
+            }
+            (SurfaceSpec::Measured { .. }, OuterFace::Wet) if !assumed.receding => {
+                Source::Field(Field::MeasuredReceding)
+            }
             (SurfaceSpec::Measured { .. }, _) if !assumed.contact => Source::Field(Field::MeasuredContact),
             (SurfaceSpec::Measured { .. }, OuterFace::Dry) => Source::Field(Field::MeasuredReceding),
             (SurfaceSpec::Measured { .. }, OuterFace::Wet) => Source::Field(Field::MeasuredAdvancing),
@@ -192,7 +201,9 @@ impl Spec {
             SectionSpec::Vee { included_angle_deg } => {
                 number(Field::VeeAngle, Primary::Section, included_angle_deg, false);
             }
-            SectionSpec::Trough { diameter_mm } => number(Field::TroughDiameter, Primary::Section, diameter_mm, true),
+            SectionSpec::Trough { diameter_mm } => {
+                number(Field::TroughDiameter, Primary::Section, diameter_mm, true)
+            }
             SectionSpec::Tube { bore_mm } => number(Field::TubeBore, Primary::Section, bore_mm, true),
         }
         number(Field::EdgeRadius, Primary::EdgeRadius, self.radius_mm, false);
@@ -263,7 +274,9 @@ impl Spec {
             let u = standard_uncertainty(self, field, value);
             let mut shifted = *self;
             field.set(&mut shifted, value + u);
-            let Some((angles, _)) = shifted.resolve_surface(Some(&wetting_liquid), &mut Vec::new()) else { continue };
+            let Some((angles, _)) = shifted.resolve_surface(Some(&wetting_liquid), &mut Vec::new()) else {
+                continue;
+            };
             let moved = match self.outer_face {
                 OuterFace::Dry => angles.advancing.angle,
                 OuterFace::Wet => angles.receding.angle,
@@ -298,7 +311,11 @@ pub fn resolve_liquid(liquid: &LiquidSpec) -> Result<Properties, Vec<Fault>> {
             };
             replace(&mut properties.density, overrides.density_kg_m3, quantity::DENSITY);
             replace(&mut properties.viscosity, overrides.viscosity_mpa_s, quantity::VISCOSITY);
-            replace(&mut properties.surface_tension, overrides.surface_tension_mn_m, quantity::SURFACE_TENSION);
+            replace(
+                &mut properties.surface_tension,
+                overrides.surface_tension_mn_m,
+                quantity::SURFACE_TENSION,
+            );
             Ok(properties)
         }
     }
@@ -335,9 +352,14 @@ fn given_property(value: f64) -> Property {
 fn measured_fault(fault: SurfaceFault) -> Fault {
     let detail = fault.to_string();
     match fault {
-        SurfaceFault::NoAngleGiven => Fault::new("/surface/measured", "missing", detail)
-            .choices(["contact_angle_deg", "advancing_deg", "receding_deg"]),
-        SurfaceFault::AdvancingBelowContact => Fault::new(Field::MeasuredAdvancing.pointer(), "contradiction", detail),
+        SurfaceFault::NoAngleGiven => Fault::new("/surface/measured", "missing", detail).choices([
+            "contact_angle_deg",
+            "advancing_deg",
+            "receding_deg",
+        ]),
+        SurfaceFault::AdvancingBelowContact => {
+            Fault::new(Field::MeasuredAdvancing.pointer(), "contradiction", detail)
+        }
         SurfaceFault::RecedingAboveContact | SurfaceFault::RecedingAboveAdvancing => {
             Fault::new(Field::MeasuredReceding.pointer(), "contradiction", detail)
         }
@@ -363,7 +385,9 @@ fn condition_fault(fault: ConditionFault) -> Fault {
         }
         ConditionFault::Freezes { at_c } => Fault::new(pointer, "freezes", detail).within(at_c, None),
         ConditionFault::Boils { at_c } => Fault::new(pointer, "boils", detail).within(None, at_c),
-        ConditionFault::Insoluble { maximum, .. } => Fault::new(pointer, "insoluble", detail).within(None, maximum),
+        ConditionFault::Insoluble { maximum, .. } => {
+            Fault::new(pointer, "insoluble", detail).within(None, maximum)
+        }
         ConditionFault::Inconsistent { .. } => Fault::new(pointer, "contradiction", detail),
         ConditionFault::PropertyOutOfBounds { .. } => Fault::new(pointer, "not_applicable", detail),
     }

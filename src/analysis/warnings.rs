@@ -110,11 +110,7 @@ fn stream_warnings(spec: &Spec, resolved: &Resolved, decision: &Decision, found:
             "trough_above_half",
             "The stream stands above half the trough's depth: its walls are taken to go on vertically.",
         ),
-        (
-            Flags::TUBE_FILLING,
-            "tube_filling",
-            "The tube is between part full and full: an interpolation.",
-        ),
+        (Flags::TUBE_FILLING, "tube_filling", "The tube is between part full and full: an interpolation."),
     ];
     for (flag, code, detail) in remarks {
         if stream.flags.contains(flag) {

@@ -39,7 +39,12 @@ mod tests {
     #[test]
     fn quantile_inverts_the_distribution() {
         // Handbook values of the normal distribution.
-        for (p, x) in [(0.975, 1.959_963_984_540_054), (0.95, 1.644_853_626_951_472_2), (0.5, 0.0), (0.999, 3.090_232_306_167_813_5)] {
+        for (p, x) in [
+            (0.975, 1.959_963_984_540_054),
+            (0.95, 1.644_853_626_951_472_2),
+            (0.5, 0.0),
+            (0.999, 3.090_232_306_167_813_5),
+        ] {
             assert!((normal_quantile(p) - x).abs() < 1e-13, "{p} {}", normal_quantile(p));
         }
         for i in 1..1000 {
@@ -47,6 +52,10 @@ mod tests {
             assert!((normal_cdf(normal_quantile(p)) - p).abs() < 1e-14);
         }
         assert!((normal_cdf(normal_quantile(1e-12)) / 1e-12 - 1.0).abs() < 1e-10);
-        assert!(normal_quantile(0.0).is_nan() && normal_quantile(1.0).is_nan() && normal_quantile(f64::NAN).is_nan());
+        assert!(
+            normal_quantile(0.0).is_nan()
+                && normal_quantile(1.0).is_nan()
+                && normal_quantile(f64::NAN).is_nan()
+        );
     }
 }
