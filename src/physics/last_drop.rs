@@ -145,7 +145,8 @@ fn hold(section: &Section, liquid: &Liquid, length: f64, half_thickness: f64, ra
         && width > widest
     {
         let share = (width / widest - 1.0).min(1.0);
-        hanging += share * (ridge_area(liquid, half) * width - hanging);
+        // Written so that at share 1 the drop leaves no trace.
+        hanging = (1.0 - share) * hanging + share * ridge_area(liquid, half) * width;
     }
     Hold { radius, hanging, left: hanging * (1.0 - drop.falls / drop.largest) }
 }
