@@ -13,12 +13,19 @@ mod monotone_table;
 mod pendant;
 mod retention;
 mod ridge;
+mod rivulet;
+mod wall_film;
 
 pub use pendant::{
     PendantDrop, WIDEST_TIP, harkins_brown_fraction, pendant_drop, round_mouth_limit, tate_volume,
 };
 pub use retention::{ContourAngle, RETENTION_BAND, furmidge_volume, retained_volume};
 pub use ridge::{WIDEST_RIM, ridge_area};
+pub use rivulet::{WallSide, thin_rivulet_flow, thin_rivulet_integral};
+pub use wall_film::{
+    LANDAU_LEVICH_PREFACTOR, drained_thickness, drained_volume, film_breakup_flow, groenveld_thickness,
+    hartley_murgatroyd_constant, landau_levich_thickness,
+};
 
 use core::f64::consts::{FRAC_PI_2, PI, SQRT_2, TAU};
 
@@ -138,7 +145,8 @@ fn hold(section: &Section, liquid: &Liquid, length: f64, half_thickness: f64, ra
         && width > widest
     {
         let share = (width / widest - 1.0).min(1.0);
-        hanging += share * (ridge_area(liquid, half) * width - hanging);
+        // Written so that at share 1 the drop leaves no trace.
+        hanging = (1.0 - share) * hanging + share * ridge_area(liquid, half) * width;
     }
     Hold { radius, hanging, left: hanging * (1.0 - drop.falls / drop.largest) }
 }

@@ -3,3 +3,4 @@
 #![allow(missing_docs)]
 
 mod liquids;
+mod wetting;
