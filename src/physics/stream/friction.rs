@@ -85,10 +85,10 @@ pub(super) fn may_creep(
         || friction_slope(section, depth, flow, kinematic_viscosity) > driving
 }
 
-/// Flow area, m², of a viscous film under a driving slope, at most the bore of a tube.
+/// Flow area, m², of a viscous film under a driving slope; more than the bore where a tube cannot carry the flow.
 ///
 /// A tube above half depth takes R_h = D/4, which is exact half full and full, so that its area grows with the flow without a jump from
-/// part full to full.
+/// part full to full, and beyond.
 pub(super) fn viscous_area(
     section: &Section,
     flow: f64,
@@ -99,7 +99,7 @@ pub(super) fn viscous_area(
         let quarter = 0.25 * bore;
         let area = conveyance(section, flow, kinematic_viscosity, driving) / (quarter * quarter);
         if area >= 0.5 * section.full_area() {
-            return Some(area.min(section.full_area()));
+            return Some(area);
         }
     }
     normal_depth(section, flow, kinematic_viscosity, driving).map(|depth| section.area(depth))

@@ -331,3 +331,6 @@ fn brink(
     let creeping = converged(section.depth_of_area(creeping), "creeping brink")?.min(depth);
     Ok((inertial.max(creeping), creeping > inertial))
 }
+
+#[cfg(test)]
+mod tests;
