@@ -2,4 +2,5 @@
 //! Each check names its source and basis.
 #![allow(missing_docs)]
 
+mod hydraulics;
 mod liquids;

@@ -1,10 +1,12 @@
 //! From the crest down: where the floor of a steep run begins, and the developed film on it.
 //!
-//! The crest is where the level surface of the pool gives way to the sloping floor. The flow is critical on it while the floor is still level:
-//! total head E = y_c + A/(2T) with g, not g cos σ, the same head as in the lip's rating (`critical_flow`), which knows no slope. The slope then
-//! starts with that energy, y cos σ + βQ²/(2gA²) = E, on the supercritical branch. (Critical flow with g cos σ at the top of the slope would
-//! let a steeper lip have less head for the same pour, and slow the stream.) Friction eats this surplus where it is strong:
-//! the energy kept, (cos σ + w(1 − cos σ)) y_c + βQ²/(2gA_c²), grows from w = 0 to 1 as sin σ/S_f goes from 1 to [`FREE_CREST`] (own judgement).
+//! The crest is where the level surface of the pool gives way to the sloping floor. The flow is critical on
+//! it while the floor is still level: total head E = y_c + A/(2T) with g, not g cos σ, the same head as in
+//! the lip's rating (`critical_flow`), which knows no slope. The slope then starts with that energy,
+//! y cos σ + βQ²/(2gA²) = E, on the supercritical branch. (Critical flow with g cos σ at the top of the slope would
+//! let a steeper lip have less head for the same pour, and slow the stream.) Friction eats this surplus where
+//! it is strong: the energy kept, (cos σ + w(1 − cos σ)) y_c + βQ²/(2gA_c²), grows from w = 0 to 1 as sin
+//! σ/S_f goes from 1 to [`FREE_CREST`] (own judgement).
 
 use super::join::smoothstep;
 use super::newton::newton;
@@ -73,8 +75,8 @@ fn start_depth(section: &Section, run: &SteepRun, flow: f64, critical: f64) -> O
     Some(start * critical)
 }
 
-/// s = y/y_c at the top of a flat slope: cos σ s + 1/(2s²) = cos σ + ½ + w(1 − cos σ), freed of cancellation with ε = 1 − s:
-/// ε(1 − cos σ + ε(1 + 2s)/(2s²)) = w(1 − cos σ).
+/// s = y/y_c at the top of a flat slope: cos σ s + 1/(2s²) = cos σ + ½ + w(1 − cos σ), freed of cancellation
+/// with ε = 1 − s: ε(1 − cos σ + ε(1 + 2s)/(2s²)) = w(1 − cos σ).
 fn flat_start(fall: f64, weight: f64) -> Option<f64> {
     let surplus = weight * fall;
     let excess = |e: f64| {

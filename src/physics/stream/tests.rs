@@ -44,7 +44,7 @@ const VISCOSITIES: [f64; 8] = [1e-4, 1e-3, 1e-2, 0.07, 0.3, 1.0, 30.0, 1000.0];
 /// More flow never lowers speed, U²h or thickness, and nothing jumps.
 #[test]
 fn more_flow_is_never_slower_nor_thinner() {
-    let ratio = libm::pow(2e9, 1.0 / 700.0);
+    let ratio = libm::pow(2e6, 1.0 / 300.0);
     let mut worst = [0.0_f64; 4];
     for section in sections() {
         for degrees in SLOPES {
@@ -52,7 +52,7 @@ fn more_flow_is_never_slower_nor_thinner() {
                 for viscosity in VISCOSITIES {
                     let liquid = liquid(viscosity);
                     let mut last: Option<Stream> = None;
-                    for flow in geometric(1e-8, 0.02, 700) {
+                    for flow in geometric(1e-8, 0.02, 300) {
                         let now = film(&section, degrees * DEGREE, length, &liquid, flow);
                         if let Some(before) = last {
                             let grows = [
@@ -92,23 +92,24 @@ fn a_steeper_floor_never_slows_a_sheet() {
     let section = Section::Sheet { width: 1.0 };
     let flow = 1e-3;
     let critical = libm::cbrt(flow * flow / GRAVITY);
-    for reynolds in geometric(1e-3, 1e6, 120) {
+    for reynolds in geometric(1e-3, 1e6, 72) {
         let liquid = liquid(1000.0 * flow / reynolds);
-        for length in [0.0].into_iter().chain(geometric(1e-3, 1e4, 42)) {
+        for length in [0.0].into_iter().chain(geometric(1e-3, 1e4, 21)) {
             let mut fastest = 0.0_f64;
-            for tenths in -300..=850 {
-                let degrees = 0.1 * f64::from(tenths);
+            for step in -75..=850 / 4 {
+                let degrees = 0.4 * f64::from(step);
                 let now = film(&section, degrees * DEGREE, length * critical, &liquid, flow).speed;
                 let falls = 1.0 - now / fastest;
-                let excepted = degrees > 80.0 && length < 1.0 && reynolds > 3.0 && reynolds < 8.0;
-                assert!(falls < if excepted { 2e-4 } else { 1e-9 }, "{reynolds} {length} {degrees}: {falls}");
+                let excepted = degrees > 82.0 && length < 0.6 && reynolds > 3.0 && reynolds < 4.1;
+                assert!(falls < if excepted { 1e-4 } else { 1e-9 }, "{reynolds} {length} {degrees}: {falls}");
                 fastest = fastest.max(now);
             }
         }
     }
 }
 
-/// Nothing jumps where the slope passes through a border of regimes: a step of 1e-6 rad changes the results by less than 1e-3.
+/// Nothing jumps where the slope passes through a border of regimes: a step of 1e-6 rad changes the results
+/// by less than 1e-3.
 #[test]
 fn nothing_jumps_with_the_slope() {
     for section in sections() {
@@ -344,7 +345,8 @@ proptest! {
         let at = |x: f64| libm::log(film(&section, slope, length, &liquid, flow * (1.0 + x)).speed);
         let derivative = |step: f64| (at(step) - at(-step)) / (2.0 * step);
         let (fine, coarse) = (derivative(1e-4), derivative(2e-4));
-        // Kinks (a tube's cavity flow, its full bore) may fall between the two: then both still lie between the one-sided slopes.
+        // Kinks (a tube's cavity flow, its full bore) may fall between the two: then both still lie between
+        // the one-sided slopes.
         let sides = [(at(0.0) - at(-2e-4)) / 2e-4, (at(2e-4) - at(0.0)) / 2e-4];
         let (low, high) = (sides[0].min(sides[1]), sides[0].max(sides[1]));
         prop_assert!((fine - coarse).abs() < 1e-4 + (high - low), "{fine} {coarse} {sides:?}");
