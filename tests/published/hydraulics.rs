@@ -3,6 +3,8 @@
 //! Data, each row with source, basis and tolerance: `data/hydraulics.json`. Left out are rows about things
 //! the service does not compute (sharp-crested weirs, Manning, Chézy, a parabolic section, outflow through a
 //! tube under a head) and rows whose basis is a regression.
+// Helpers outside the test functions read a fixed data file.
+#![allow(clippy::unwrap_used)]
 
 use dribble_risk::physics::GRAVITY;
 use dribble_risk::physics::lip::{Run, Section};
