@@ -2,5 +2,6 @@
 //! Each check names its source and basis.
 #![allow(missing_docs)]
 
+mod hydraulics;
 mod liquids;
 mod wetting;

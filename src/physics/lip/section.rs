@@ -57,9 +57,9 @@ impl Wetted {
 impl Section {
     /// What a stream of depth `depth` (m, normal to the floor, above the lowest point) wets.
     ///
-    /// Sheet A = Wy; vee, half-angle ϑ, A = y² tan ϑ; circle of half-angle φ = 2 asin √(y/D), A = D²(φ − sin φ cos φ)/4,
-    /// T = D sin φ, P = Dφ; trough above half depth A = πD²/8 + D(y − D/2), T = D. A depth beyond a tube's bore is
-    /// the full bore.
+    /// Sheet A = Wy; vee, half-angle ϑ, A = y² tan ϑ; circle of half-angle φ = 2 asin √(y/D), A = D²(φ − sin
+    /// φ cos φ)/4, T = D sin φ, P = Dφ; trough above half depth A = πD²/8 + D(y − D/2), T = D. A depth beyond
+    /// a tube's bore is the full bore.
     #[must_use]
     pub fn wetted(&self, depth: f64) -> Wetted {
         match *self {
@@ -127,9 +127,9 @@ impl Section {
 
     /// Constant K of laminar friction, S_f = K ν U/(g R_h²): a 32nd of the Darcy f·Re on 4R_h.
     ///
-    /// Wide film 3, circle 2 (both analytic; the circle exactly so half full and full, used at every depth and for a
-    /// trough above half depth too, where a deep slot would tend to 3), vee 1.78 (half of a square duct, so a 90° vee;
-    /// 1.66–1.78 at other angles; Shah & London 1978, from memory).
+    /// Wide film 3, circle 2 (both analytic; the circle exactly so half full and full, used at every depth
+    /// and for a trough above half depth too, where a deep slot would tend to 3), vee 1.78 (half of a square
+    /// duct, so a 90° vee; 1.66–1.78 at other angles; Shah & London 1978, from memory).
     #[must_use]
     pub fn friction_constant(&self) -> f64 {
         match self {
@@ -174,7 +174,7 @@ fn half_angle(diameter: f64, depth: f64) -> f64 {
 }
 
 /// φ − sin φ cos φ, without cancellation at small angles.
-pub(crate) fn segment(angle: f64, sine: f64, cosine: f64) -> f64 {
+fn segment(angle: f64, sine: f64, cosine: f64) -> f64 {
     if angle < 0.2 {
         let square = angle * angle;
         // Taylor series of φ − ½ sin 2φ; the first term left out is below 1e-15 of the sum at 0.2.
@@ -201,8 +201,9 @@ fn circle_moment(diameter: f64, depth: f64) -> f64 {
     let wetted = circle(diameter, depth);
     let width = wetted.top_width;
     if depth < 0.01 * diameter {
-        // Shallow segment: T³/12 and A (D/2 − y) nearly cancel; leading terms of the series in y/D, 1e-4 at worst.
-        return 0.4 * wetted.area * depth * (1.0 + depth / diameter / 35.0);
+        // Shallow segment: T³/12 and A (D/2 − y) nearly cancel; leading terms of the series in y/D, 1e-5 at
+        // worst.
+        return 0.4 * wetted.area * depth * (1.0 + 3.0 / 35.0 * depth / diameter);
     }
     width * width * width / 12.0 - wetted.area * (0.5 * diameter - depth)
 }
@@ -217,4 +218,65 @@ fn circle_depth(diameter: f64, area: f64, highest: f64) -> Option<f64> {
     let bracket = Bracket { low: (0.0, -libm::cbrt(fraction)), high: (high, excess(high).max(0.0)) };
     let half = libm::sin(0.5 * find_root(excess, bracket, 1e-15)?);
     Some(diameter * half * half)
+}
+
+#[cfg(test)]
+mod tests {
+    use core::f64::consts::{FRAC_PI_2, PI};
+
+    use super::{Section, segment};
+
+    const SECTIONS: [Section; 4] = [
+        Section::Sheet { width: 0.024 },
+        Section::Vee { included_angle: FRAC_PI_2 },
+        Section::Trough { diameter: 0.02 },
+        Section::Tube { bore: 0.02 },
+    ];
+
+    #[test]
+    fn area_grows_by_the_top_width_and_moment_by_the_area() {
+        for section in SECTIONS {
+            for i in 1..100 {
+                let depth = 0.0002 * f64::from(i) - 0.000_05;
+                let step = 1e-6 * depth;
+                let slope = |f: &dyn Fn(f64) -> f64| (f(depth + step) - f(depth - step)) / (2.0 * step);
+                let top_width = slope(&|y| section.area(y));
+                assert!((top_width / section.top_width(depth) - 1.0).abs() < 1e-7, "{section:?} {depth}");
+                let area = slope(&|y| section.first_moment(y));
+                assert!((area / section.area(depth) - 1.0).abs() < 1e-4, "{section:?} {depth} {area}");
+            }
+        }
+    }
+
+    #[test]
+    fn depth_and_area_are_inverse() {
+        for section in SECTIONS {
+            for depth in [1e-6, 1e-4, 3e-3, 0.0099, 0.0101, 0.0195] {
+                let back = section.depth_of_area(section.area(depth)).unwrap();
+                assert!((back / depth - 1.0).abs() < 1e-11, "{section:?} {depth} {back}");
+            }
+        }
+    }
+
+    #[test]
+    fn half_full_and_full_bore() {
+        let tube = Section::Tube { bore: 0.02 };
+        let half = tube.wetted(0.01);
+        assert!((half.area / (PI * 1e-4 / 2.0) - 1.0).abs() < 1e-14);
+        assert!((half.top_width - 0.02).abs() < 1e-17 && (half.hydraulic_radius() - 0.005).abs() < 1e-16);
+        let full = tube.wetted(1.0);
+        assert!(
+            (full.area / tube.full_area() - 1.0).abs() < 1e-14
+                && (full.hydraulic_radius() - 0.005).abs() < 1e-16
+        );
+        assert_eq!(Section::Trough { diameter: 0.02 }.wetted(0.01).top_width, half.top_width);
+    }
+
+    #[test]
+    fn small_segments_join_the_closed_form() {
+        let (sine, cosine) = libm::sincos(0.2);
+        let closed = 0.2 - sine * cosine;
+        let (sine, cosine) = libm::sincos(0.2 - 1e-15);
+        assert!((segment(0.2 - 1e-15, sine, cosine) / closed - 1.0).abs() < 1e-13);
+    }
 }

@@ -9,7 +9,8 @@ const HALF_RULE: [(f64, f64); 4] = [
     (0.960_289_856_497_536_2, 0.101_228_536_290_376_3),
 ];
 
-/// Integral of `f` from `from` to `to` by the 8-point Gauss–Legendre rule: exact for polynomials up to degree 15.
+/// Integral of `f` from `from` to `to` by the 8-point Gauss–Legendre rule: exact for polynomials up to degree
+/// 15.
 pub fn gauss_legendre_8(mut f: impl FnMut(f64) -> f64, from: f64, to: f64) -> f64 {
     let (centre, half) = (0.5 * (from + to), 0.5 * (to - from));
     let sum: f64 = HALF_RULE

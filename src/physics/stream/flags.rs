@@ -9,15 +9,18 @@ pub struct Flags(u32);
 impl Flags {
     /// Nothing to remark.
     pub const NONE: Self = Self(0);
-    /// The brink depth is below the capillary length: surface tension shapes the brink, and no formula here has it.
+    /// The brink depth is below the capillary length: surface tension shapes the brink, and no formula here
+    /// has it.
     pub const BRINK_BELOW_CAPILLARY_LENGTH: Self = Self(1);
-    /// Total head at the control below [`SMALL_HEAD`](super::SMALL_HEAD): allow ±20 % on flow at a given head.
+    /// Total head at the control below [`SMALL_HEAD`](super::SMALL_HEAD): allow ±20 % on flow at a given
+    /// head.
     pub const SMALL_HEAD: Self = Self(1 << 1);
     /// The brink is as thin as a viscous film can be, rather than what its end-depth ratio says: ±30 %.
     pub const VISCOUS_BRINK_BOUND: Self = Self(1 << 2);
     /// The approach film was thickened to what a viscous film needs just before a brink: ±30 %.
     pub const VISCOUS_APPROACH_BOUND: Self = Self(1 << 3);
-    /// Reynolds number on 4 R_h above [`LAMINAR_LIMIT`](super::LAMINAR_LIMIT), on a downhill run: laminar friction is doubtful.
+    /// Reynolds number on 4 R_h above [`LAMINAR_LIMIT`](super::LAMINAR_LIMIT), on a downhill run: laminar
+    /// friction is doubtful.
     pub const TURBULENT: Self = Self(1 << 4);
     /// The stream stands above the half-round part of a trough, between its vertical walls.
     pub const TROUGH_ABOVE_HALF: Self = Self(1 << 5);

@@ -4,13 +4,15 @@ use crate::physics::GRAVITY;
 use crate::physics::lip::Section;
 use crate::physics::numerics::{Bracket, find_root};
 
-/// Deepest normal depth looked for in a tube, in bores: beyond about 0.9 the conveyance of a part-full tube falls again.
+/// Deepest normal depth looked for in a tube, in bores: beyond about 0.9 the conveyance of a part-full tube
+/// falls again.
 const DEEPEST_IN_TUBE: f64 = 0.85;
 
 /// Slope of the energy line by laminar friction, S_f = K ν U/(g R_h²) = K ν Q P²/(g A³), dimensionless.
 ///
-/// At a `depth` in m. K: [`Section::friction_constant`]; `kinematic_viscosity` ν, m²/s; `flow` Q, m³/s. Analytic for a wide film and for a half-full or full
-/// circle (Hagen–Poiseuille: 32 ν U/(g D²)); fully developed laminar flow.
+/// At a `depth` in m. K: [`Section::friction_constant`]; `kinematic_viscosity` ν, m²/s; `flow` Q, m³/s.
+/// Analytic for a wide film and for a half-full or full circle (Hagen–Poiseuille: 32 ν U/(g D²)); fully
+/// developed laminar flow.
 #[must_use]
 pub fn friction_slope(section: &Section, depth: f64, flow: f64, kinematic_viscosity: f64) -> f64 {
     let wetted = section.wetted(depth);
@@ -18,10 +20,11 @@ pub fn friction_slope(section: &Section, depth: f64, flow: f64, kinematic_viscos
     section.friction_constant() * kinematic_viscosity * flow / (GRAVITY * wetted.area * radius * radius)
 }
 
-/// Normal depth, m: the depth at which friction balances a driving slope `driving` (sin of the floor's slope), S_f(y) = `driving` > 0.
+/// Normal depth, m: the depth at which friction balances a driving slope `driving` (sin of the floor's
+/// slope), S_f(y) = `driving` > 0.
 ///
-/// Sheet (3νq/(g sin σ))^⅓ (Nusselt 1916); vee and circles from A R_h² = KνQ/(g sin σ). `None` where a tube cannot carry the flow part full (above
-/// 0.85 of the bore), or if the iteration fails.
+/// Sheet (3νq/(g sin σ))^⅓ (Nusselt 1916); vee and circles from A R_h² = KνQ/(g sin σ). `None` where a tube
+/// cannot carry the flow part full (above 0.85 of the bore), or if the iteration fails.
 #[must_use]
 pub fn normal_depth(section: &Section, flow: f64, kinematic_viscosity: f64, driving: f64) -> Option<f64> {
     let target = conveyance(section, flow, kinematic_viscosity, driving);
@@ -65,10 +68,11 @@ fn in_circle(section: &Section, diameter: f64, target: f64, deepest: Option<f64>
 
 /// Driving slope of a very viscous film one thickness before a brink (own estimate, ±30 % in thickness).
 ///
-/// On a level floor that ends, lubrication theory (gh³h′ = −3νq, h → 0 at the brink) gives h³ = 12νq/g one thickness upstream: the
-/// film falls as if driven by a quarter of gravity. On a vertical floor it is driven by gravity whole. Between them a straight line in sin σ,
-/// (1 + 3 sin σ)/4, which is never below sin σ, so the film it gives is never thicker than the normal depth. Uphill 1/(4(1 − 3 sin σ)),
-/// which joins it without a kink.
+/// On a level floor that ends, lubrication theory (gh³h′ = −3νq, h → 0 at the brink) gives h³ = 12νq/g one
+/// thickness upstream: the film falls as if driven by a quarter of gravity. On a vertical floor it is driven
+/// by gravity whole. Between them a straight line in sin σ, (1 + 3 sin σ)/4, which is never below sin σ, so
+/// the film it gives is never thicker than the normal depth. Uphill 1/(4(1 − 3 sin σ)), which joins it
+/// without a kink.
 pub(super) fn brink_driving(sine: f64) -> f64 {
     if sine >= 0.0 { 0.25 * (1.0 + 3.0 * sine) } else { 0.25 / (1.0 - 3.0 * sine) }
 }
@@ -85,10 +89,11 @@ pub(super) fn may_creep(
         || friction_slope(section, depth, flow, kinematic_viscosity) > driving
 }
 
-/// Flow area, m², of a viscous film under a driving slope, at most the bore of a tube.
+/// Flow area, m², of a viscous film under a driving slope; more than the bore where a tube cannot carry the
+/// flow.
 ///
-/// A tube above half depth takes R_h = D/4, which is exact half full and full, so that its area grows with the flow without a jump from
-/// part full to full.
+/// A tube above half depth takes R_h = D/4, which is exact half full and full, so that its area grows with
+/// the flow without a jump from part full to full, and beyond.
 pub(super) fn viscous_area(
     section: &Section,
     flow: f64,
@@ -99,7 +104,7 @@ pub(super) fn viscous_area(
         let quarter = 0.25 * bore;
         let area = conveyance(section, flow, kinematic_viscosity, driving) / (quarter * quarter);
         if area >= 0.5 * section.full_area() {
-            return Some(area.min(section.full_area()));
+            return Some(area);
         }
     }
     normal_depth(section, flow, kinematic_viscosity, driving).map(|depth| section.area(depth))

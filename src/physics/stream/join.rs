@@ -6,10 +6,11 @@ pub(super) fn smoothstep(x: f64) -> f64 {
     x * x * (3.0 - 2.0 * x)
 }
 
-/// The smaller of `a` and `b`, rounded off where they differ by less than `width`, and the share of `b` in it (0..1).
+/// The smaller of `a` and `b`, rounded off where they differ by less than `width`, and the share of `b` in it
+/// (0..1).
 ///
-/// min(a, b) − (w − |a − b|)²/(4w); its derivatives with respect to `a` and `b` are 1 − share and share, so the result grows
-/// with both and never faster than the faster of the two.
+/// min(a, b) − (w − |a − b|)²/(4w); its derivatives with respect to `a` and `b` are 1 − share and share, so
+/// the result grows with both and never faster than the faster of the two.
 pub(super) fn smooth_min(a: f64, b: f64, width: f64) -> (f64, f64) {
     let gap = a - b;
     let share = (0.5 + 0.5 * gap / width).clamp(0.0, 1.0);
@@ -17,9 +18,11 @@ pub(super) fn smooth_min(a: f64, b: f64, width: f64) -> (f64, f64) {
     (a.min(b) - inside * inside / (4.0 * width), share)
 }
 
-/// `value` raised softly where it falls below `floor`: untouched from the floor up, `floor − width/2` far below it.
+/// `value` raised softly where it falls below `floor`: untouched from the floor up, `floor − width/2` far
+/// below it.
 ///
-/// With d = floor − value: value + d²/(2w) up to d = w, floor − w/2 beyond. Grows with both, never faster than the faster.
+/// With d = floor − value: value + d²/(2w) up to d = w, floor − w/2 beyond. Grows with both, never faster
+/// than the faster.
 pub(super) fn soft_floor(value: f64, floor: f64, width: f64) -> f64 {
     let depth = (floor - value).max(0.0);
     if depth < width { value + 0.5 * depth * depth / width } else { floor - 0.5 * width }

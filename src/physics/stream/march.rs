@@ -5,7 +5,8 @@ use crate::physics::GRAVITY;
 use crate::physics::lip::Section;
 use crate::physics::numerics::gauss_legendre_8;
 
-/// Length of a panel of the quadrature, and where the depth counts as exponentially near normal, in e-foldings of y − y_N.
+/// Length of a panel of the quadrature, and where the depth counts as exponentially near normal, in
+/// e-foldings of y − y_N.
 const PANEL: f64 = 1.5;
 const PANELS: u32 = 8;
 
@@ -23,10 +24,12 @@ pub(super) struct Reach<'a> {
     pub cosine: f64,
 }
 
-/// Depth, m, after `length`, m, of supercritical flow that starts at depth `start`, m; `normal` is the normal depth, m.
+/// Depth, m, after `length`, m, of supercritical flow that starts at depth `start`, m; `normal` is the normal
+/// depth, m.
 ///
-/// x = ∫ (cos σ − βQ²T/(gA³))/(sin σ − S_f) dy. With y = y_N + (y₀ − y_N) e^−n the integrand in n is smooth and positive, and
-/// tends to a constant: 8-point Gauss–Legendre on panels of 1.5 in n, Newton's method in the last; from n = 12 on the limit is used.
+/// x = ∫ (cos σ − βQ²T/(gA³))/(sin σ − S_f) dy. With y = y_N + (y₀ − y_N) e^−n the integrand in n is smooth
+/// and positive, and tends to a constant: 8-point Gauss–Legendre on panels of 1.5 in n, Newton's method in
+/// the last; from n = 12 on the limit is used.
 pub(super) fn depth_after(reach: &Reach<'_>, length: f64, start: f64, normal: f64) -> Option<f64> {
     let gap = start - normal;
     if length <= 0.0 {

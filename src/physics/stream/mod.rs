@@ -1,31 +1,43 @@
 //! From pour rate to the stream at the lip.
 //!
-//! [`approach_film`] gives thickness and mean speed on the floor a few thicknesses before the edge, and the brink for information.
-//! Nothing here has been compared with a lip experiment at millimetre depth.
+//! [`approach_film`] gives thickness and mean speed on the floor a few thicknesses before the edge, and the
+//! brink for information. Nothing here has been compared with a lip experiment at millimetre depth.
 //!
 //! # The approach film
 //!
-//! * **Level, uphill, mild** (sin σ ≤ S_f): the critical section, plug profile (β = 1): on a level sheet h = (q²/g)^⅓ and U²/(gh) = 1 exactly. Uphill
-//!   gravity normal to the floor is g cos σ. Downhill it is taken as g, so that the slope of a mild run does not change the film
-//!   (it would be thicker by at most 1/cos^⅓ σ).
-//! * **Steep**: the developed film (β = 6/5) that starts at the crest and runs down: [`sheet_depth_after`] in closed form for a sheet, a quadrature for the others. Its
-//!   limits are Bernoulli's and Nusselt's films. The crest is described in `crest.rs`.
-//! * **The join**: the thinner of the two, rounded where their areas differ by less than 3 %. The developed film starts 6 % thicker than the plug at its
-//!   critical depth, so a run too short or too flat to draw it below that is controlled by its brink; on a very long run the change comes at
-//!   sin σ = S_f, where the normal depth is critical. β goes from 1 to 6/5 with the share of the developed film.
-//! * **Very viscous films**: the critical depth can be thinner than a creeping film can be. One thickness before the brink of a level floor lubrication theory gives
-//!   (12νq/g)^⅓; the area is raised softly (over 10 %) to what a driving slope (1 + 3 sin σ)/4 gives (uphill see `friction.rs`). On a level sheet this acts below
-//!   Re = q/ν = 12 and is flagged ([`Flags::VISCOUS_APPROACH_BOUND`]); U²/(gh) is then below 1. A steep film is normal or thicker and never touched.
-//! * **Tube**: part full it is a circle. Above the flow that washes the air cavity out (0.542 √(gD) full bore) it fills: a true tube jumps to full and slows; here
-//!   it fills at constant speed until the bore is full, so that speed and ρU²h never fall. A tube with ρgD²/γ ≤ 4.5 is full; up to 6.75 a smooth join.
+//! * **Level, uphill, mild** (sin σ ≤ S_f): the critical section, plug profile (β = 1): on a level sheet h =
+//!   (q²/g)^⅓ and U²/(gh) = 1 exactly. Uphill gravity normal to the floor is g cos σ. Downhill it is taken as
+//!   g, so that the slope of a mild run does not change the film (it would be thicker by at most 1/cos^⅓ σ).
+//! * **Steep**: the developed film (β = 6/5) that starts at the crest and runs down: [`sheet_depth_after`] in
+//!   closed form for a sheet, a quadrature for the others. Its limits are Bernoulli's and Nusselt's films.
+//!   The crest is described in `crest.rs`.
+//! * **The join**: the thinner of the two, rounded where their areas differ by less than 3 %. The developed
+//!   film starts 6 % thicker than the plug at its critical depth, so a run too short or too flat to draw it
+//!   below that is controlled by its brink; on a very long run the change comes at sin σ = S_f, where the
+//!   normal depth is critical. β goes from 1 to 6/5 with the share of the developed film.
+//! * **Very viscous films**: the critical depth can be thinner than a creeping film can be. One thickness
+//!   before the brink of a level floor lubrication theory gives (12νq/g)^⅓; the area is raised softly (over
+//!   10 %) to what a driving slope (1 + 3 sin σ)/4 gives (uphill see `friction.rs`). On a level sheet this
+//!   acts below Re = q/ν = 12 and is flagged ([`Flags::VISCOUS_APPROACH_BOUND`]); U²/(gh) is then below 1. A
+//!   steep film is normal or thicker and not touched (but for a tube above half depth near the vertical).
+//! * **Tube**: part full it is a circle. Above the flow that washes the air cavity out (0.542 √(gD) full
+//!   bore) it fills: a true tube jumps to full and slows; here it fills at constant speed until the bore is
+//!   full, so that speed and ρU²h never fall. A tube with ρgD²/γ ≤ 4.5 is full; up to 6.75 a smooth join.
 //!   Glugging is not covered.
 //!
 //! # What must hold, and where it does not
 //!
-//! With all else fixed, more flow never lowers the speed, the thickness or U²h; a steeper floor never lowers the speed on a sheet; results are
-//! continuous in flow and slope. Tested over the accepted region. Exceptions:
+//! With all else fixed, more flow never lowers the speed, the thickness or U²h; a steeper floor never lowers
+//! the speed on a sheet; results are continuous in flow and slope. Tested over the accepted region.
+//! Exceptions:
 //!
-//! * `thickness_low` (A/P) of a tube falls by up to 18 % from 0.81 of the bore to full, because the wetted perimeter grows faster than the area.
+//! * The speed of a sheet falls with the slope, by less than 1e-4 in all, above 82° when Re is 3 to 4 (sin σ
+//!   just above S_f) and the run is shorter than 0.6 y_c: at a given depth a steeper floor has less gravity
+//!   normal to it, so the film answers more slowly to the little drive that friction leaves. Round sections
+//!   have the same exception.
+//! * A tube's bore and surface tension decide whether it runs full, so We may move either way with them.
+//! * `thickness_low` (A/P) of a tube falls by up to 18 % from 0.81 of the bore to full, because the wetted
+//!   perimeter grows faster than the area.
 
 mod brink;
 mod crest;
@@ -58,8 +70,9 @@ pub const SMALL_HEAD: f64 = 0.010;
 /// Reynolds number on 4 R_h above which laminar friction is doubtful (common practice for pipes, no source).
 pub const LAMINAR_LIMIT: f64 = 2300.0;
 
-/// Width in ln A of the join between the critical and the developed film, and of the rise to the viscous bound (own judgement). The first is less
-/// than half of ln 1.0627, by which the developed film's critical area exceeds the plug's.
+/// Width in ln A of the join between the critical and the developed film, and of the rise to the viscous
+/// bound (own judgement). The first is less than half of ln 1.0627, by which the developed film's critical
+/// area exceeds the plug's.
 const CONTROL_JOIN: f64 = 0.03;
 const VISCOUS_JOIN: f64 = 0.10;
 
@@ -77,7 +90,8 @@ pub enum Control {
 /// The stream at the lip.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Stream {
-    /// Thickness of the equivalent sheet, m: A/T (a trough above half depth and a tube above half: A/D, so πD/4 for a full tube).
+    /// Thickness of the equivalent sheet, m: A/T (a trough above half depth and a tube above half: A/D, so
+    /// πD/4 for a full tube).
     pub thickness: f64,
     /// Low estimate of the thickness, m: A/P.
     pub thickness_low: f64,
@@ -124,7 +138,8 @@ fn converged<T>(value: Option<T>, what: &'static str) -> Result<T, StreamFault> 
 
 /// The approach film and the brink of a pour of `flow`, m³/s (> 0), over a lip: see the [module](self).
 ///
-/// Valid for laminar films; the accepted region of [`quantity`](crate::physics::quantity) gives finite positive results throughout.
+/// Valid for laminar films; the accepted region of [`quantity`](crate::physics::quantity) gives finite
+/// positive results throughout.
 ///
 /// # Errors
 ///
@@ -199,7 +214,8 @@ fn equivalent_sheet(section: &Section, depth: f64, area: f64) -> f64 {
     }
 }
 
-/// Flow, m³/s, that the section carries with a free surface: a tube only up to the flow that washes its cavity out.
+/// Flow, m³/s, that the section carries with a free surface: a tube only up to the flow that washes its
+/// cavity out.
 fn carried(section: &Section, flow: f64) -> f64 {
     match *section {
         Section::Tube { bore } => flow.min(tube::cavity_flow(bore)),
@@ -301,8 +317,8 @@ fn fill(
 
 /// Depth at the brink, m, and whether it is the viscous bound.
 ///
-/// F² = βQ²T/(g A³) of the film before filling, at least 1; with g cos σ as far as the film is developed. A tube that fills loses its fall with
-/// the part of the bore (in ln A) that it has filled.
+/// F² = βQ²T/(g A³) of the film before filling, at least 1; with g cos σ as far as the film is developed. A
+/// tube that fills loses its fall with the part of the bore (in ln A) that it has filled.
 fn brink(
     section: &Section,
     flow: f64,
@@ -331,3 +347,6 @@ fn brink(
     let creeping = converged(section.depth_of_area(creeping), "creeping brink")?.min(depth);
     Ok((inertial.max(creeping), creeping > inertial))
 }
+
+#[cfg(test)]
+mod tests;

@@ -1,10 +1,12 @@
 //! Newton's method inside a bracket.
 
-/// Root of a function that gives its value and slope, by Newton's steps, halving the bracket where a step leaves it or shrinks too
-/// slowly.
+/// Root of a function that gives its value and slope, by Newton's steps, halving the bracket where a step
+/// leaves it or shrinks too slowly.
 ///
-/// `below` and `above` are arguments where the function is negative (or zero) and positive; either may be the larger. Ends when the step
-/// is below 1e-14 of the argument's size, or the function is exactly zero; `None` after 100 steps or when a value is not a number.
+/// `below` and `above` are arguments where the function is negative (or zero) and positive; either may be the
+/// larger. Ends when a Newton step is below 1e-9 of the argument's size (which it has then reached to about
+/// 1e-14), a halving below 1e-14, or the function is exactly zero; `None` after 100 steps or when a value is
+/// not a number.
 pub(super) fn newton(
     mut f: impl FnMut(f64) -> (f64, f64),
     mut below: f64,
@@ -35,7 +37,8 @@ pub(super) fn newton(
         };
         last_step = (next - x).abs();
         x = next;
-        if last_step <= 1e-14 * x.abs() {
+        // Newton's error after a step is of the order of the step's square.
+        if last_step <= if next == newton { 1e-9 } else { 1e-14 } * x.abs() {
             return Some(x);
         }
     }

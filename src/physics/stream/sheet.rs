@@ -7,11 +7,11 @@ const NORMAL: f64 = 45.0;
 
 /// Depth, m, of a wide film that has run `length`, m, down a slope from the depth `start`, m.
 ///
-/// (g_c h − βq²/h²) h′ = g_s h − 3νq/h² has the integral x = cot σ {h − h₀ + (h_c³ − h_N³)[B(h₀) − B(h)]}, with
-/// B(h) = h_N⁻²{ln|s−1|/3 − ln(s²+s+1)/6 − atan((2s+1)/√3)/√3}, s = h/h_N (own integration; the flat-bed case is Bresse's).
-/// h_N = (3νq/g_s)^⅓ `normal`, m; h_c³ = βq²/g_c `critical_cubed`, m³; `cotangent` cot σ. The film must be supercritical
-/// at the start, h₀ < h_c, and the slope steep, h_N < h_c. Solved by Newton's method for ln((h₀ − h_N)/(h − h_N)), in which x is monotone.
-/// `None` only if the iteration fails.
+/// (g_c h − βq²/h²) h′ = g_s h − 3νq/h² has the integral x = cot σ {h − h₀ + (h_c³ − h_N³)[B(h₀) − B(h)]},
+/// with B(h) = h_N⁻²{ln|s−1|/3 − ln(s²+s+1)/6 − atan((2s+1)/√3)/√3}, s = h/h_N (own integration; the flat-bed
+/// case is Bresse's). h_N = (3νq/g_s)^⅓ `normal`, m; h_c³ = βq²/g_c `critical_cubed`, m³; `cotangent` cot σ.
+/// The film must be supercritical at the start, h₀ < h_c, and the slope steep, h_N < h_c. Solved by Newton's
+/// method for ln((h₀ − h_N)/(h − h_N)), in which x is monotone. `None` only if the iteration fails.
 #[must_use]
 pub fn depth_after(length: f64, start: f64, normal: f64, critical_cubed: f64, cotangent: f64) -> Option<f64> {
     let gap = start - normal;
@@ -38,7 +38,8 @@ pub fn depth_after(length: f64, start: f64, normal: f64, critical_cubed: f64, co
         let x = cotangent * (depth - start + surplus / (normal * normal) * difference);
         (x - length, rate(depth))
     };
-    // The rate changes monotonically from `first` to `last`; a parabola through the start overshoots or nearly meets the root.
+    // The rate changes monotonically from `first` to `last`; a parabola through the start overshoots or
+    // nearly meets the root.
     let curvature = gap * cotangent * {
         let q = start * start + start * normal + normal * normal;
         (3.0 * start * start * q + (critical_cubed - start * start * start) * (2.0 * start + normal))
@@ -49,7 +50,8 @@ pub fn depth_after(length: f64, start: f64, normal: f64, critical_cubed: f64, co
     newton(excess, 0.0, most, guess.min(most)).map(depth_at)
 }
 
-/// h/h_N from which the series [`far_primitive`] is used: no cancellation there, and no transcendental function.
+/// h/h_N from which the series [`far_primitive`] is used: no cancellation there, and no transcendental
+/// function.
 const FAR: f64 = 4.0;
 
 /// The part of h_N² B that stays finite at s = 1.
