@@ -6,6 +6,7 @@ use std::time::{Duration, Instant};
 
 use dribble_risk::service::run::serve_on;
 use dribble_risk::service::settings::Settings;
+use dribble_risk::service::state::Shared;
 use tokio::sync::oneshot;
 
 use crate::ask;
@@ -14,6 +15,7 @@ use crate::server::{Reply, connect, read_reply, request};
 /// The service with the test routes on a socket of its own, until told to stop.
 struct Running {
     address: SocketAddr,
+    state: Shared,
     stop: oneshot::Sender<()>,
     served: tokio::task::JoinHandle<()>,
 }
@@ -23,11 +25,12 @@ async fn start(set: impl FnOnce(&mut Settings)) -> Running {
     let listener = tokio::net::TcpListener::bind("127.0.0.1:0").await.unwrap();
     let address = listener.local_addr().unwrap();
     let (stop, stopped) = oneshot::channel::<()>();
+    let serving = state.clone();
     let served = tokio::spawn(async move {
         let until = async { stopped.await.unwrap_or_default() };
-        serve_on(listener, ask::service(&state), &state, until).await;
+        serve_on(listener, ask::service(&serving), &serving, until).await;
     });
-    Running { address, stop, served }
+    Running { address, state, stop, served }
 }
 
 async fn blocking<T: Send + 'static>(work: impl FnOnce() -> T + Send + 'static) -> T {
@@ -108,7 +111,7 @@ async fn a_panic_does_not_end_the_connection() {
 
 #[tokio::test(flavor = "multi_thread")]
 async fn stopping_finishes_what_is_in_flight() {
-    let Running { address, stop, served } = start(|_| {}).await;
+    let Running { address, stop, served, .. } = start(|_| {}).await;
     let mut stream = connect(address);
     stream.write_all(b"GET /test/pause HTTP/1.1\r\nHost: lip\r\n\r\n").unwrap();
     tokio::time::sleep(Duration::from_millis(100)).await;
@@ -121,7 +124,7 @@ async fn stopping_finishes_what_is_in_flight() {
 
 #[tokio::test(flavor = "multi_thread")]
 async fn half_a_head_does_not_hold_up_the_stop() {
-    let Running { address, stop, served } =
+    let Running { address, stop, served, .. } =
         start(|settings| settings.shutdown_s = "0.3".parse().unwrap()).await;
     let mut half = connect(address);
     half.write_all(b"GET /health/live HT").unwrap();
@@ -131,4 +134,25 @@ async fn half_a_head_does_not_hold_up_the_stop() {
     tokio::time::timeout(Duration::from_secs(10), served).await.unwrap().unwrap();
     assert!(begun.elapsed() >= Duration::from_millis(290), "it was waited for until the deadline");
     drop(half);
+}
+
+#[tokio::test(flavor = "multi_thread")]
+async fn a_caller_that_hangs_up_ends_the_work_and_is_noted() {
+    let running = start(|_| {}).await;
+    let mut stream = connect(running.address);
+    stream.write_all(b"GET /test/never HTTP/1.1\r\nHost: lip\r\n\r\n").unwrap();
+    let wait_for = async |count: usize| {
+        let begun = Instant::now();
+        while running.state.in_flight() != count {
+            assert!(begun.elapsed() < Duration::from_secs(10));
+            tokio::time::sleep(Duration::from_millis(2)).await;
+        }
+    };
+    wait_for(1).await;
+    drop(stream);
+    wait_for(0).await;
+    let address = running.address;
+    let metrics = blocking(move || request(address, "GET /metrics HTTP/1.1\r\nHost: lip\r\n\r\n", &[])).await;
+    let line = r#"http_requests_total{route="/test/never",method="GET",status="499"} 1"#;
+    assert!(metrics.body.contains(line), "{}", metrics.body);
 }
