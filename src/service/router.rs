@@ -3,6 +3,8 @@
 use std::sync::Arc;
 
 use axum::Router;
+use axum::response::Redirect;
+use axum::routing::get;
 use utoipa::openapi::OpenApi;
 use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
@@ -38,7 +40,14 @@ pub fn app_with(state: &Shared, more: Router<Shared>) -> Router {
     let (resources, document) = described(base_path);
     let document = Arc::new(docs::Contract::new(&document));
     let inside = resources.merge(docs::routes(&document, base_path)).merge(more);
-    let whole = if base_path.is_empty() { inside } else { Router::new().nest(base_path, inside) };
+    let whole = if base_path.is_empty() {
+        inside
+    } else {
+        let root = base_path.to_owned();
+        Router::new()
+            .route(&format!("{base_path}/"), get(async move || Redirect::permanent(&root)))
+            .nest(base_path, inside)
+    };
     whole.layer(House::new(state.clone())).with_state(state.clone())
 }
 

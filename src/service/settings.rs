@@ -60,7 +60,7 @@ pub struct Settings {
     #[arg(long, env = "DRIBBLE_RISK_SHUTDOWN_S", default_value = "10", value_name = "S", global = true)]
     pub shutdown_s: Seconds,
 
-    /// Web origin that may call from a browser, e.g. https://example.org; repeat for several, * for any
+    /// Web origin that may call from a browser, scheme and host (and port); repeat for several, * for any
     #[arg(
         long,
         env = "DRIBBLE_RISK_CORS_ORIGIN",

@@ -18,6 +18,7 @@ pub(super) struct Record {
     route: Option<MatchedPath>,
     trace: Option<HeaderValue>,
     base_path_len: usize,
+    closed: bool,
 }
 
 impl Record {
@@ -31,6 +32,7 @@ impl Record {
             route: request.extensions().get::<MatchedPath>().cloned(),
             trace: trace_parent(request.headers()),
             base_path_len: base_path.len(),
+            closed: false,
         }
     }
 
@@ -45,6 +47,7 @@ impl Record {
     }
 
     pub(super) fn close(&mut self, bytes: u64) {
+        self.closed = true;
         let elapsed = self.started.elapsed();
         let route = self.route();
         meters::note(route, &self.method, self.status.as_u16(), elapsed.as_secs_f64());
@@ -62,6 +65,19 @@ impl Record {
             duration_us = u64::try_from(elapsed.as_micros()).unwrap_or(u64::MAX),
             bytes,
         );
+    }
+}
+
+/// Noted as the status of a request whose caller hung up before there was an answer; never sent.
+const HUNG_UP: u16 = 499;
+
+impl Drop for Record {
+    /// A request that is dropped unanswered is noted as well: its caller hung up.
+    fn drop(&mut self) {
+        if !self.closed {
+            self.status = StatusCode::from_u16(HUNG_UP).unwrap_or_default();
+            self.close(0);
+        }
     }
 }
 

@@ -136,6 +136,7 @@ where
         if let Some(incoming) = &incoming
             && !incoming.is_complete()
             && !expects
+            && response.status() != StatusCode::REQUEST_TIMEOUT
         {
             let overloaded = response.status() == StatusCode::SERVICE_UNAVAILABLE;
             let limits = if overloaded { 1 } else { DRAIN_LIMITS };

@@ -1,0 +1,13 @@
+//! The service as its callers meet it: in process through `app()`, and over real sockets.
+#![allow(missing_docs, clippy::unwrap_used, clippy::expect_used, clippy::panic)]
+
+mod ask;
+mod bearer;
+mod command_line;
+mod contract;
+mod cross_origin;
+mod lookups;
+mod problems;
+mod server;
+mod shell;
+mod sockets;
