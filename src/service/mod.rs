@@ -9,6 +9,7 @@ pub mod body;
 pub mod contract;
 pub mod explain;
 pub mod fingerprint;
+pub mod heavy;
 pub mod layers;
 pub mod nearest;
 pub mod negotiation;

@@ -9,7 +9,7 @@ use utoipa::openapi::OpenApi;
 use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
-use super::api::{docs, evaluations, health, metrics, problems, version};
+use super::api::{batch, docs, evaluations, health, metrics, problems, version};
 use super::contract;
 use super::layers::House;
 use super::state::Shared;
@@ -19,6 +19,7 @@ use super::telemetry;
 fn resources() -> OpenApiRouter<Shared> {
     OpenApiRouter::with_openapi(contract::ground())
         .routes(routes!(evaluations::evaluate))
+        .routes(routes!(batch::evaluate_batch))
         .routes(routes!(health::live))
         .routes(routes!(health::ready))
         .routes(routes!(metrics::metrics))

@@ -113,7 +113,7 @@ impl Default for Settings {
     }
 }
 
-fn cores() -> usize {
+pub(crate) fn cores() -> usize {
     std::thread::available_parallelism().map_or(1, NonZeroUsize::get)
 }
 

@@ -2,10 +2,12 @@
 #![allow(missing_docs, clippy::unwrap_used, clippy::expect_used, clippy::panic)]
 
 mod ask;
+mod batch;
 mod bearer;
 mod command_line;
 mod contract;
 mod cross_origin;
+mod evaluations;
 mod lookups;
 mod problems;
 mod server;

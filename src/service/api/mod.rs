@@ -1,5 +1,6 @@
 //! A file per resource: its request, its answer and its handler stand together.
 
+pub mod batch;
 pub mod docs;
 pub mod evaluations;
 pub mod health;

@@ -42,10 +42,7 @@ pub async fn evaluate(headers: HeaderMap, JsonBytes(bytes): JsonBytes) -> Result
 pub fn evaluate_json(bytes: &[u8]) -> Result<Vec<u8>, Problem> {
     let request: EvaluationRequest = read(bytes)?;
     let mut answer = Vec::with_capacity(4096);
-    evaluate_into(&request, &mut answer).map_err(|failure| match failure {
-        Failure::Faults(faults) => invalid(faults),
-        Failure::NotFinite => Problem::internal("The answer holds a number that is not finite."),
-    })?;
+    evaluate_into(&request, &mut answer)?;
     Ok(answer)
 }
 
@@ -56,6 +53,15 @@ pub enum Failure {
     Faults(Vec<Fault>),
     /// A number of the answer is not finite: the service's fault.
     NotFinite,
+}
+
+impl From<Failure> for Problem {
+    fn from(failure: Failure) -> Self {
+        match failure {
+            Failure::Faults(faults) => invalid(faults),
+            Failure::NotFinite => Self::internal("The answer holds a number that is not finite."),
+        }
+    }
 }
 
 /// Writes the answer to a request as JSON text at the end of `answer`.
