@@ -61,6 +61,9 @@ pub const LEVERS: &[Field] = &[
     Field::Flow,
 ];
 
+/// Rounding may add this share to a change.
+const ROUNDING: f64 = 0.05;
+
 /// Points scanned on each side before a root is sought.
 const SCAN: u32 = 8;
 
@@ -165,8 +168,8 @@ struct Search<'a> {
 impl Search<'_> {
     /// The clean value nearest to the present one between `low` and `high`.
     fn nearest_clean(&self, low: f64, high: f64) -> Option<Remedy> {
-        let below = self.first_clean(self.from.min(high), low);
-        let above = self.first_clean(self.from.max(low), high);
+        let below = if low < self.from { self.first_clean(self.from.min(high), low) } else { None };
+        let above = if high > self.from { self.first_clean(self.from.max(low), high) } else { None };
         let distance = |to: &f64| (to - self.from).abs();
         let to = match (below, above) {
             (Some(b), Some(a)) => Some(if distance(&b) <= distance(&a) { b } else { a }),
@@ -217,7 +220,7 @@ impl Search<'_> {
         Some(slack.min(libm::log(d.balance.numbers.weber / FREE_SHEET_WEBER)))
     }
 
-    /// `x` rounded towards `clean_side` to as few digits as keep the verdict clean.
+    /// `x` rounded towards `clean_side` to as few digits as add little to the change and keep the verdict clean.
     fn verified(&self, x: f64, clean_side: f64) -> Option<f64> {
         let is_clean = |x: f64| {
             self.moved(x)
@@ -225,8 +228,9 @@ impl Search<'_> {
                 .and_then(|resolved| decide(&resolved.case).ok())
                 .is_some_and(|d| d.verdict == Verdict::Clean)
         };
-        let within = |y: f64| (y - x) * (y - clean_side) <= 0.0;
-        let rounded = (2..=6).map(|digits| round_towards(x, clean_side, digits)).filter(|y| within(*y));
+        let little = ROUNDING * (x - self.from).abs();
+        let within = |y: f64| (y - x) * (y - clean_side) <= 0.0 && (y - x).abs() <= little;
+        let rounded = (2..=8).map(|digits| round_towards(x, clean_side, digits)).filter(|y| within(*y));
         rounded.chain([clean_side]).find(|y| is_clean(*y))
     }
 

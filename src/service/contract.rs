@@ -1,6 +1,7 @@
 //! The OpenAPI document's common parts: what holds for every operation is added here, once.
 
 use utoipa::openapi::path::{Operation, PathItem};
+use utoipa::openapi::schema::{AdditionalProperties, Schema};
 use utoipa::openapi::security::{HttpAuthScheme, HttpBuilder, SecurityRequirement, SecurityScheme};
 use utoipa::openapi::{ContentBuilder, OpenApi, Ref, RefOr, Response, ResponseBuilder, Server};
 use utoipa::{OpenApi as _, ToSchema};
@@ -40,9 +41,24 @@ pub(super) fn complete(document: &mut OpenApi, base_path: &str) {
                 .build(),
         ),
     );
+    for schema in components.schemas.values_mut() {
+        close_choices(schema);
+    }
     for (path, item) in &mut document.paths.paths {
         for operation in operations(item) {
             add_problems(path, operation);
+        }
+    }
+}
+
+/// Alternatives are objects with exactly one member: no other beside it.
+fn close_choices(schema: &mut RefOr<Schema>) {
+    let RefOr::T(Schema::OneOf(choices)) = schema else { return };
+    for choice in &mut choices.items {
+        if let RefOr::T(Schema::Object(object)) = choice
+            && object.properties.len() == 1
+        {
+            object.additional_properties = Some(Box::new(AdditionalProperties::FreeForm(false)));
         }
     }
 }

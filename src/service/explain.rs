@@ -135,8 +135,11 @@ fn faults_elsewhere<T: Request>(document: &Value, known: &[Fault]) -> Vec<Fault>
     let mut found = request.faults();
     // A verdict on two parts together means nothing when one of them is a stand-in.
     found.retain(|fault| {
-        let part = fault.pointer.split('/').nth(1).unwrap_or_default();
-        !broken(part) && fault.code != "not_applicable"
+        let mut parts = fault.pointer.split('/').skip(1);
+        let part = parts.next().unwrap_or_default();
+        // A member that is itself a pointer speaks of the part that it points into.
+        let of = parts.next().and_then(|name| name.strip_prefix("~1")?.split("~1").next());
+        !broken(part) && !of.is_some_and(&broken) && fault.code != "not_applicable"
     });
     found
 }

@@ -10,6 +10,7 @@ mod cross_origin;
 mod evaluations;
 mod lookups;
 mod problems;
+mod properties;
 mod server;
 mod shell;
 mod sockets;

@@ -33,10 +33,8 @@ pub enum EdgeRequest {
 #[serde(deny_unknown_fields)]
 pub struct RoundedEdge {
     /// Radius of the rounding that the stream turns over; 0 = ideally sharp. Default standard uncertainty: 5 %, at least 0.01 mm.
-    #[schema(inline)]
     pub radius_mm: EdgeRadius,
     /// Angle from the floor's direction to the outer wall's; solid wedge angle = 180 − turn; 180 folds right back. Default standard uncertainty: 1°.
-    #[schema(inline)]
     pub turn_deg: Turn,
 }
 
@@ -46,11 +44,9 @@ pub struct RoundedEdge {
 pub struct RunRequest {
     /// Length of the floor before the edge; default 0. Default standard uncertainty: 2 %.
     #[serde(default = "no_length")]
-    #[schema(inline)]
     pub length_mm: RunLength,
     /// Slope of the floor, downhill positive; default level, 0. Default standard uncertainty: 0.5°.
     #[serde(default = "level")]
-    #[schema(inline)]
     pub slope_deg: RunSlope,
 }
 
@@ -87,7 +83,6 @@ pub enum SectionRequest {
 #[serde(deny_unknown_fields)]
 pub struct SheetSection {
     /// Width of the lip. Default standard uncertainty: 1 %.
-    #[schema(inline)]
     pub width_mm: SheetWidth,
 }
 
@@ -96,7 +91,6 @@ pub struct SheetSection {
 #[serde(deny_unknown_fields)]
 pub struct VeeSection {
     /// Full included angle. Default standard uncertainty: 1°.
-    #[schema(inline)]
     pub included_angle_deg: IncludedAngle,
 }
 
@@ -105,7 +99,6 @@ pub struct VeeSection {
 #[serde(deny_unknown_fields)]
 pub struct TroughSection {
     /// Diameter. Default standard uncertainty: 1 %.
-    #[schema(inline)]
     pub diameter_mm: TroughDiameter,
 }
 
@@ -114,7 +107,6 @@ pub struct TroughSection {
 #[serde(deny_unknown_fields)]
 pub struct TubeSection {
     /// Bore. Default standard uncertainty: 1 %.
-    #[schema(inline)]
     pub bore_mm: TubeBore,
 }
 

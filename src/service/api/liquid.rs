@@ -31,46 +31,45 @@ pub enum LiquidRequest {
 pub struct CatalogueLiquid {
     /// Density at 15 °C (mineral oil). Default standard uncertainty: 0.1 %.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub density_15c_kg_m3: Option<Density15>,
     /// Density that replaces the catalogue's. Default standard uncertainty: 0.1 %.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub density_kg_m3: Option<Density>,
     /// Fat content by mass (milk, cream). Default standard uncertainty: 2 %.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub fat_percent: Option<Fat>,
     /// Identifier, as in `GET /v1/liquids`.
     #[schema(example = "sucrose-solution")]
     pub id: String,
     /// Mass fraction of the solute. Default standard uncertainty: 1 %.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub mass_fraction: Option<MassFraction>,
     /// Salinity (sea water). Default standard uncertainty: 1 %.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub salinity_g_kg: Option<Salinity>,
     /// Surface tension that replaces the catalogue's. Default standard uncertainty: 1 %.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub surface_tension_mn_m: Option<SurfaceTension>,
     /// Temperature; default 20 °C. Default standard uncertainty: 1 °C.
     #[serde(default = "room_temperature")]
-    #[schema(inline)]
     pub temperature_c: Temperature,
     /// Kinematic viscosity at 100 °C (mineral oil). Default standard uncertainty: 2 %.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub viscosity_100c_mm2_s: Option<KinematicViscosity100>,
     /// Kinematic viscosity at 40 °C (mineral oil). Default standard uncertainty: 2 %.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub viscosity_40c_mm2_s: Option<KinematicViscosity40>,
     /// Dynamic viscosity that replaces the catalogue's. Default standard uncertainty: 2 %.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub viscosity_mpa_s: Option<Viscosity>,
 }
 
@@ -83,13 +82,10 @@ const fn room_temperature() -> Temperature {
 #[serde(deny_unknown_fields)]
 pub struct MeasuredLiquid {
     /// Density. Default standard uncertainty: 0.1 %.
-    #[schema(inline)]
     pub density_kg_m3: Density,
     /// Surface tension. Default standard uncertainty: 1 %.
-    #[schema(inline)]
     pub surface_tension_mn_m: SurfaceTension,
     /// Dynamic viscosity. Default standard uncertainty: 2 %.
-    #[schema(inline)]
     pub viscosity_mpa_s: Viscosity,
 }
 

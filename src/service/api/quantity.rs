@@ -3,7 +3,7 @@
 
 use crate::physics::quantity::{self as range, Quantity};
 use serde::{Deserialize, Deserializer, Serialize, Serializer, de};
-use std::{borrow::Cow, fmt};
+use std::{borrow::Cow, collections::BTreeMap, fmt, marker::PhantomData};
 use utoipa::{
     PartialSchema, ToSchema,
     openapi::{ObjectBuilder, RefOr, Type, extensions::ExtensionsBuilder, schema::Schema},
@@ -186,6 +186,33 @@ pub(super) fn given<'de, D: Deserializer<'de>, T: Deserialize<'de>>(
     deserializer: D,
 ) -> Result<Option<T>, D::Error> {
     T::deserialize(deserializer).map(Some)
+}
+
+/// Reads a map whose members may each be named only once.
+pub(super) fn distinct<'de, D: Deserializer<'de>, T: Deserialize<'de>>(
+    deserializer: D,
+) -> Result<BTreeMap<String, T>, D::Error> {
+    struct Reader<T>(PhantomData<T>);
+
+    impl<'de, T: Deserialize<'de>> de::Visitor<'de> for Reader<T> {
+        type Value = BTreeMap<String, T>;
+
+        fn expecting(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+            f.write_str("an object")
+        }
+
+        fn visit_map<A: de::MapAccess<'de>>(self, mut members: A) -> Result<Self::Value, A::Error> {
+            let mut map = BTreeMap::new();
+            while let Some((name, value)) = members.next_entry()? {
+                if map.insert(name, value).is_some() {
+                    return Err(de::Error::custom("a member is named twice"));
+                }
+            }
+            Ok(map)
+        }
+    }
+
+    deserializer.deserialize_map(Reader(PhantomData))
 }
 
 #[cfg(test)]

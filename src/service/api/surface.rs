@@ -61,15 +61,15 @@ impl From<StateRequest> for State {
 pub struct MeasuredSurface {
     /// Advancing angle: at it a dry face is wetted.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub advancing_deg: Option<ContactAngle>,
     /// Static contact angle.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub contact_angle_deg: Option<ContactAngle>,
     /// Receding angle: at it a wet face lets go.
     #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
-    #[schema(inline, nullable = false)]
+    #[schema(nullable = false)]
     pub receding_deg: Option<ContactAngle>,
 }
 
@@ -78,14 +78,11 @@ pub struct MeasuredSurface {
 #[serde(deny_unknown_fields)]
 pub struct EstimatedSurface {
     /// Dispersive component of the surface energy. Default standard uncertainty: 5 %, at least 0.5 mN/m.
-    #[schema(inline)]
     pub dispersive_mn_m: SurfaceEnergy,
     /// Polar component of the surface energy. Default standard uncertainty: 5 %, at least 0.5 mN/m.
-    #[schema(inline)]
     pub polar_mn_m: SurfaceEnergy,
     /// Ratio of true to projected area; default 1, smooth. Default standard uncertainty: 5 %.
     #[serde(default = "smooth")]
-    #[schema(inline)]
     pub roughness_ratio: RoughnessRatio,
 }
 

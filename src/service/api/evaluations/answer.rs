@@ -7,12 +7,13 @@ use utoipa::ToSchema;
 
 use crate::{
     analysis::{
-        case::Confidence, evaluation::Evaluation, field::Field, notice::Notice, remedy::Remedy, spec::Spec,
-        uncertainty::standard_uncertainty,
+        case::Confidence, decision::Verdict, evaluation::Evaluation, field::Field, notice::Notice,
+        remedy::Remedy, spec::Spec, uncertainty::standard_uncertainty,
     },
     physics::{
         liquid::Property,
         quantity::{self, DEGREE, Quantity},
+        separation::numbers::Regime,
         stream::Control,
     },
     service::{
@@ -28,9 +29,8 @@ use crate::{
 /// What is said of one lip.
 #[derive(Debug, Serialize, ToSchema)]
 pub struct EvaluationAnswer<'a> {
-    /// `clean`: the stream leaves, at the confidence asked for; `dribbles`: the liquid runs down the outside, at that confidence; `marginal`: neither can be said.
-    #[schema(example = "marginal")]
-    pub verdict: &'static str,
+    /// The verdict at the confidence asked for.
+    pub verdict: VerdictAnswer,
     /// Degree of belief that this lip dribbles at this pour rate: Φ(−m/u) with the margin m = ln(safety factor) and its standard uncertainty u. Not a production rate.
     #[schema(value_type = f64, minimum = 0, maximum = 1)]
     pub dribble_probability: Number,
@@ -72,6 +72,75 @@ pub struct EvaluationAnswer<'a> {
     pub resolved: ResolvedAnswer,
     /// What computed this answer.
     pub model: ModelAnswer,
+}
+
+/// The verdict.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, ToSchema)]
+#[serde(rename_all = "snake_case")]
+pub enum VerdictAnswer {
+    /// The stream leaves, at the confidence asked for.
+    Clean,
+    /// Neither can be said at the confidence asked for.
+    Marginal,
+    /// The liquid runs down the outside, at the confidence asked for.
+    Dribbles,
+}
+
+impl From<Verdict> for VerdictAnswer {
+    fn from(verdict: Verdict) -> Self {
+        match verdict {
+            Verdict::Clean => Self::Clean,
+            Verdict::Marginal => Self::Marginal,
+            Verdict::Dribbles => Self::Dribbles,
+        }
+    }
+}
+
+/// What sets the stream.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, ToSchema)]
+#[serde(rename_all = "snake_case")]
+pub enum ControlAnswer {
+    /// A level, mild or rising floor: critical just before the brink.
+    Brink,
+    /// A steep floor: critical at its crest, faster and thinner from there.
+    Crest,
+    /// A tube running full.
+    Full,
+}
+
+impl From<Control> for ControlAnswer {
+    fn from(control: Control) -> Self {
+        match control {
+            Control::Brink => Self::Brink,
+            Control::Crest => Self::Crest,
+            Control::Full => Self::Full,
+        }
+    }
+}
+
+/// What rules the stream as a whole.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, ToSchema)]
+#[serde(rename_all = "snake_case")]
+pub enum RegimeAnswer {
+    /// Weber and Reynolds numbers far above 1: inertia.
+    Inertial,
+    /// Between the others.
+    Transitional,
+    /// Weber number below 2: surface tension; the liquid drips, beads or runs.
+    Capillary,
+    /// Reynolds number below 1: viscosity.
+    Viscous,
+}
+
+impl From<Regime> for RegimeAnswer {
+    fn from(regime: Regime) -> Self {
+        match regime {
+            Regime::Inertial => Self::Inertial,
+            Regime::Transitional => Self::Transitional,
+            Regime::Capillary => Self::Capillary,
+            Regime::Viscous => Self::Viscous,
+        }
+    }
 }
 
 /// A value with its interval.
@@ -127,12 +196,10 @@ pub struct StreamAnswer {
     /// Speed at the brink, for information.
     #[schema(value_type = f64)]
     pub brink_speed_m_s: Number,
-    /// What sets the stream: `crest` (a steep floor), `brink` (a level or mild one) or `full` (a tube running full).
-    #[schema(example = "crest")]
-    pub control: &'static str,
-    /// What rules the stream as a whole: `inertial`, `transitional`, `capillary` or `viscous`.
-    #[schema(example = "inertial")]
-    pub regime: &'static str,
+    /// What sets the stream.
+    pub control: ControlAnswer,
+    /// What rules the stream as a whole.
+    pub regime: RegimeAnswer,
 }
 
 /// Where the lip changes sides.
@@ -300,7 +367,7 @@ impl<'a> EvaluationAnswer<'a> {
         let (low, high) = decision.safety_interval(case);
         let remedies = evaluation.remedies.as_ref();
         Self {
-            verdict: decision.verdict.as_str(),
+            verdict: decision.verdict.into(),
             dribble_probability: Number(decision.dribble_probability),
             safety_factor: IntervalAnswer {
                 value: Number(decision.safety_factor()),
@@ -358,16 +425,8 @@ fn stream(evaluation: &Evaluation) -> StreamAnswer {
         capillary: Number(numbers.capillary),
         brink_thickness_mm: millimetres(stream.brink_thickness),
         brink_speed_m_s: Number(stream.brink_speed),
-        control: control(stream.control),
-        regime: numbers.regime().as_str(),
-    }
-}
-
-fn control(control: Control) -> &'static str {
-    match control {
-        Control::Crest => "crest",
-        Control::Brink => "brink",
-        Control::Full => "full",
+        control: stream.control.into(),
+        regime: numbers.regime().into(),
     }
 }
 

@@ -18,7 +18,7 @@ use crate::{
         api::{
             lip::{EdgeRequest, LipRequest},
             liquid::LiquidRequest,
-            quantity::{Confidence, Flow, given},
+            quantity::{Confidence, Flow, distinct, given},
             surface::SurfaceRequest,
         },
         explain::{Contract, Request, escaped},
@@ -37,13 +37,12 @@ pub struct EvaluationRequest {
     pub coefficients: String,
     /// Confidence of the verdict and of every interval; default 0.95.
     #[serde(default = "default_confidence")]
-    #[schema(inline)]
     pub confidence: Confidence,
     /// Optional parts of the answer; default all four. Callers that want speed name fewer.
     #[serde(default = "all_parts")]
     pub include: Vec<PartRequest>,
     /// What the caller's tooling allows a remedy to change: JSON Pointers of fields, each with a range. When given, only these fields are changed.
-    #[serde(default, skip_serializing_if = "BTreeMap::is_empty")]
+    #[serde(default, deserialize_with = "distinct", skip_serializing_if = "BTreeMap::is_empty")]
     #[schema(example = json!({"/lip/edge/rounded/radius_mm": {"minimum": 0.3, "maximum": 2.0}}))]
     pub limits: BTreeMap<String, LimitRequest>,
     /// Where the liquid leaves the vessel.
@@ -62,7 +61,7 @@ pub struct EvaluationRequest {
     pub surface: SurfaceRequest,
     /// Standard uncertainties of given numbers: JSON Pointers of fields of this request, each with a standard uncertainty in the field's unit.
     /// Defaults stand at each field.
-    #[serde(default, skip_serializing_if = "BTreeMap::is_empty")]
+    #[serde(default, deserialize_with = "distinct", skip_serializing_if = "BTreeMap::is_empty")]
     #[schema(example = json!({"/lip/edge/rounded/radius_mm": 0.03}))]
     pub uncertainty: BTreeMap<String, f64>,
 }
@@ -72,7 +71,6 @@ pub struct EvaluationRequest {
 #[serde(deny_unknown_fields)]
 pub struct PourRequest {
     /// Pour rate. Default standard uncertainty: 3 %.
-    #[schema(inline)]
     pub flow_ml_s: Flow,
 }
 
@@ -177,6 +175,7 @@ impl EvaluationRequest {
         }
         let EdgeRequest::Rounded(edge) = self.lip.edge;
         let limits = self.limits(&mut faults);
+        let uncertainties = self.uncertainties(&mut faults);
         let (Some(surface), Some(liquid), Some(coefficients)) = (surface, liquid, coefficients) else {
             return Err(faults);
         };
@@ -197,29 +196,41 @@ impl EvaluationRequest {
             uncertainty: Uncertainties::default(),
             coefficients,
         };
-        self.uncertainties(&mut spec, &mut faults);
+        for (field, value) in uncertainties {
+            if field.get(&spec).is_some() {
+                spec.uncertainty.set(field, value);
+            } else {
+                let pointer = field.pointer();
+                let detail = format!("this request gives no {pointer}");
+                let known = Field::all().filter(|field| field.get(&spec).is_some()).map(Field::pointer);
+                let fault = Fault::new(uncertainty_pointer(pointer), "unknown_pointer", detail);
+                faults.push(fault.choices(nearest(pointer, known)));
+            }
+        }
         if faults.is_empty() { Ok((spec, limits)) } else { Err(faults) }
     }
 
-    fn uncertainties(&self, spec: &mut Spec, faults: &mut Vec<Fault>) {
+    /// The uncertainties given, by field.
+    fn uncertainties(&self, faults: &mut Vec<Fault>) -> Vec<(Field, f64)> {
+        let mut known = Vec::with_capacity(self.uncertainty.len());
         for (pointer, &value) in &self.uncertainty {
-            let at = format!("/uncertainty/{}", escaped(pointer));
-            let field = Field::at(pointer).filter(|field| field.get(spec).is_some());
-            let Some(field) = field else {
-                let detail = format!("{} names no number that this request gives", quoted(pointer));
-                let known = Field::all().filter(|field| field.get(spec).is_some()).map(Field::pointer);
-                faults.push(Fault::new(at, "unknown_pointer", detail).choices(nearest(pointer, known)));
+            let Some(field) = Field::at(pointer) else {
+                let detail = format!("{} names no number of an evaluation request", quoted(pointer));
+                let fault = Fault::new(uncertainty_pointer(pointer), "unknown_pointer", detail);
+                faults.push(fault.choices(nearest(pointer, Field::all().map(Field::pointer))));
                 continue;
             };
             let quantity = field.quantity();
             let most = quantity.maximum - quantity.minimum;
             if value >= 0.0 && value <= most {
-                spec.uncertainty.set(field, value);
+                known.push((field, value));
             } else {
                 let detail = format!("a standard uncertainty must be between 0 and {most} {}", quantity.unit);
-                faults.push(Fault::new(at, "out_of_range", detail.trim_end()).within(0.0, most));
+                let fault = Fault::new(uncertainty_pointer(pointer), "out_of_range", detail.trim_end());
+                faults.push(fault.within(0.0, most));
             }
         }
+        known
     }
 
     fn limits(&self, faults: &mut Vec<Fault>) -> Vec<Limit> {
@@ -254,6 +265,10 @@ impl EvaluationRequest {
         }
         limits
     }
+}
+
+fn uncertainty_pointer(pointer: &str) -> String {
+    format!("/uncertainty/{}", escaped(pointer))
 }
 
 impl Request for EvaluationRequest {
