@@ -29,17 +29,22 @@ pub fn estimate(numbers: &Numbers, contact_angle: f64) -> AdhesionEstimate {
 
 /// Form factor F = (1+x) ln(1+x) / (x (1 + x/2)) with (1+x) ln(1+x) = h/r: 1 for r ≫ h, 0 for a sharp edge.
 fn form_factor(radius_ratio: f64) -> f64 {
-    if radius_ratio <= 0.0 {
+    // F ≈ 2 (r/h) ln²(h/r) for sharp edges: below this it is less than 1e-140, and h/r may overflow.
+    if radius_ratio < 1e-150 {
         return 0.0;
     }
     let target = 1.0 / radius_ratio;
-    // Newton on y = ln(1+x): y e^y = target is Lambert's W; start from W's asymptote.
-    let mut y = if target < 1.0 { target } else { libm::log1p(target) * 0.8 };
-    for _ in 0..30 {
-        let ey = libm::exp(y);
-        let step = (y * ey - target) / (ey * (1.0 + y));
+    // With y = ln(1+x) the equation is y e^y = h/r; Newton on the smoother of its two forms converges from these starts.
+    let mut y = libm::log1p(target);
+    for _ in 0..60 {
+        let step = if target < 1.0 {
+            let ey = libm::exp(y);
+            (y * ey - target) / (ey * (1.0 + y))
+        } else {
+            (y + libm::log(y) - libm::log(target)) * y / (1.0 + y)
+        };
         y -= step;
-        if step.abs() < 1e-14 * y {
+        if step.abs() <= 1e-15 * y {
             break;
         }
     }
@@ -53,13 +58,14 @@ mod tests {
 
     #[test]
     fn form_factor_solves_its_equation_and_keeps_its_limits() {
-        for r in [1e-6, 1e-3, 0.1, 0.5, 1.0, 3.0, 100.0, 1e6] {
+        for r in [1e-149, 1e-100, 1e-30, 1e-6, 1e-3, 0.1, 0.5, 1.0, 3.0, 100.0, 1e6] {
             let f = form_factor(r);
             assert!(f > 0.0 && f <= 1.0 + 1e-9, "{r} {f}");
         }
         assert!((form_factor(1e6) - 1.0).abs() < 1e-5);
         assert!(form_factor(1e-6) < 1e-3);
         assert_eq!(form_factor(0.0), 0.0);
+        assert_eq!(form_factor(5e-324), 0.0);
         // x = 1: (1+x) ln(1+x) = 2 ln 2, so r/h = 1/(2 ln 2) and F = 2 ln 2 / 1.5.
         let two_ln_two = 2.0 * core::f64::consts::LN_2;
         assert!((form_factor(1.0 / two_ln_two) - two_ln_two / 1.5).abs() < 1e-12);
