@@ -9,7 +9,9 @@ use utoipa::openapi::OpenApi;
 use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
-use super::api::{batch, docs, evaluations, health, metrics, problems, version};
+use super::api::{
+    batch, contact_angles, docs, evaluations, health, liquids, metrics, problems, surfaces, version,
+};
 use super::contract;
 use super::layers::House;
 use super::state::Shared;
@@ -20,6 +22,11 @@ fn resources() -> OpenApiRouter<Shared> {
     OpenApiRouter::with_openapi(contract::ground())
         .routes(routes!(evaluations::evaluate))
         .routes(routes!(batch::evaluate_batch))
+        .routes(routes!(contact_angles::contact_angles))
+        .routes(routes!(liquids::list_liquids))
+        .routes(routes!(liquids::liquid))
+        .routes(routes!(surfaces::list_surfaces))
+        .routes(routes!(surfaces::surface))
         .routes(routes!(health::live))
         .routes(routes!(health::ready))
         .routes(routes!(metrics::metrics))

@@ -1,6 +1,7 @@
 //! A file per resource: its request, its answer and its handler stand together.
 
 pub mod batch;
+pub mod contact_angles;
 pub mod docs;
 pub mod evaluations;
 pub mod health;
@@ -13,6 +14,7 @@ pub mod problems;
 pub mod property;
 pub mod quantity;
 pub mod surface;
+pub mod surfaces;
 pub mod version;
 
 use http::HeaderValue;
