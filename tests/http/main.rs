@@ -5,6 +5,7 @@ mod ask;
 mod batch;
 mod bearer;
 mod command_line;
+mod contact_angles;
 mod contract;
 mod cross_origin;
 mod evaluations;

@@ -4,7 +4,7 @@ use serde::Serialize;
 use utoipa::ToSchema;
 
 use super::{
-    estimates::{Estimate, estimates, probe_of, surest},
+    estimates::{Estimate, LiquidSide, estimates, probe_of, surest},
     request::{Question, TextureRequest},
     solid::{Known, Solid, propagated},
 };
@@ -154,7 +154,7 @@ impl<'a> ContactAnglesAnswer<'a> {
             surface_tension_mn_m: PropertyAnswer::new(
                 &question.properties.surface_tension,
                 &SURFACE_TENSION,
-                None,
+                Some(LiquidSide::of(question).tension_uncertainty / SURFACE_TENSION.to_si),
             ),
             warnings: findings.warnings.iter().map(NoticeAnswer::from).collect(),
             model,

@@ -124,7 +124,8 @@ pub struct Angle {
 #[derive(Debug, Clone, PartialEq)]
 pub struct LiquidSide {
     tension: f64,
-    tension_uncertainty: f64,
+    /// Standard uncertainty of the surface tension, N/m.
+    pub tension_uncertainty: f64,
     dispersive_fraction: Option<f64>,
     probe: Option<&'static ProbeLiquid>,
 }

@@ -73,10 +73,8 @@ pub enum SolidRequest {
 #[serde(deny_unknown_fields)]
 pub struct ComponentsRequest {
     /// Dispersive component.
-    #[schema(inline)]
     pub dispersive_mn_m: SurfaceEnergy,
     /// Polar component.
-    #[schema(inline)]
     pub polar_mn_m: SurfaceEnergy,
 }
 
@@ -85,13 +83,10 @@ pub struct ComponentsRequest {
 #[serde(deny_unknown_fields)]
 pub struct AcidBaseRequest {
     /// Lifshitz–van der Waals component.
-    #[schema(inline)]
     pub lw_mn_m: SurfaceEnergy,
     /// Electron-donor component.
-    #[schema(inline)]
     pub minus_mn_m: SurfaceEnergy,
     /// Electron-acceptor component.
-    #[schema(inline)]
     pub plus_mn_m: SurfaceEnergy,
 }
 
@@ -100,7 +95,6 @@ pub struct AcidBaseRequest {
 #[serde(deny_unknown_fields)]
 pub struct TotalRequest {
     /// Total surface energy.
-    #[schema(inline)]
     pub total_mn_m: SurfaceEnergy,
 }
 
@@ -109,10 +103,8 @@ pub struct TotalRequest {
 #[serde(deny_unknown_fields)]
 pub struct InterfacialRequest {
     /// Energy of the solid against this liquid.
-    #[schema(inline)]
     pub solid_liquid_mn_m: SurfaceEnergy,
     /// Energy of the solid against the liquid's vapour.
-    #[schema(inline)]
     pub solid_vapour_mn_m: SurfaceEnergy,
 }
 
@@ -130,10 +122,8 @@ const MOST_PROBES: usize = 32;
 #[serde(deny_unknown_fields)]
 pub struct ProbeAngleRequest {
     /// Static contact angle. Standard uncertainty: 3°.
-    #[schema(inline)]
     pub contact_angle_deg: ContactAngle,
     /// The probe liquid, at 20 °C.
-    #[schema(inline)]
     pub liquid: ProbeName,
 }
 
