@@ -28,7 +28,7 @@ fn ask(request: &Value) -> Value {
 
 #[track_caller]
 fn about(liquid: Value, solid: Value) -> Value {
-    ask(&json!({"liquid": liquid, "solid": solid}))
+    ask(&Value::Object([("liquid".into(), liquid), ("solid".into(), solid)].into_iter().collect()))
 }
 
 #[track_caller]

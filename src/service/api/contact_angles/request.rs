@@ -275,3 +275,29 @@ impl Request for ContactAnglesRequest {
         self.question().err().unwrap_or_default()
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::{ContactAnglesRequest, EXAMPLE};
+
+    /// The fingerprint is taken over what serde writes, so that must stand in RFC 8785 order whatever the alternative.
+    #[test]
+    fn every_alternative_serialises_in_canonical_order() {
+        let liquid = r#"{"measured": {"viscosity_mpa_s": 1.5, "surface_tension_mn_m": 46.5, "density_kg_m3": 1030.5}}"#;
+        for solid in [
+            r#"{"components": {"polar_mn_m": 1.5, "dispersive_mn_m": 30.5}}"#,
+            r#"{"acid_base": {"plus_mn_m": 1.5, "minus_mn_m": 2.5, "lw_mn_m": 30.5}}"#,
+            r#"{"total": {"total_mn_m": 30.5}}"#,
+            r#"{"interfacial": {"solid_vapour_mn_m": 1.5, "solid_liquid_mn_m": 30.5}}"#,
+            r#"{"probe_angles": [{"liquid": "water", "contact_angle_deg": 80.5}]}"#,
+        ] {
+            let text =
+                format!(r#"{{"texture": {{"solid_fraction": 0.5}}, "solid": {solid}, "liquid": {liquid}}}"#);
+            let request: ContactAnglesRequest = serde_json::from_str(&text).unwrap();
+            let written = serde_json::to_string(&request).unwrap();
+            let canonical = serde_json_canonicalizer::to_string(&serde_json::to_value(&request).unwrap());
+            assert_eq!(written, canonical.unwrap());
+        }
+        assert!(serde_json::from_str::<ContactAnglesRequest>(EXAMPLE).is_ok());
+    }
+}

@@ -121,7 +121,7 @@ impl Solid {
     }
 }
 
-/// How far shares of a standard uncertainty are tried when the whole leads out of what a model takes.
+/// Shares of a standard uncertainty by which a number is shifted, the next one where the one before leads out of what a model takes (own judgement).
 const SHARES: [f64; 3] = [1.0, 1.0 / 8.0, 1.0 / 64.0];
 
 /// Standard uncertainty of `f` at `numbers` from their `uncertainties`, in quadrature.
