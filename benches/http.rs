@@ -14,7 +14,7 @@ use std::{
     time::{Duration, Instant},
 };
 
-use axum::{Router, routing::post};
+use axum::{Json, Router, routing::post};
 use bytes::Bytes;
 use tokio::{
     io::{AsyncReadExt, AsyncWriteExt},
@@ -37,19 +37,36 @@ fn main() {
     }
 }
 
-/// A bare axum server: takes a body, answers as many bytes as the service would.
+/// A bare axum server that does no work: at `/` it takes a JSON body and answers JSON text of the size that the service would answer, as `axum::Json` does both; at
+/// `/bytes` it reads nothing and answers as many bytes.
 async fn echo(size: usize) {
-    let answer = Bytes::from(vec![b' '; size]);
-    let app = Router::new().route(
-        "/",
-        post(move |body: Bytes| {
-            let answer = answer.clone();
-            async move {
-                std::hint::black_box(body);
-                ([("content-type", "application/json")], answer)
-            }
-        }),
-    );
+    // A list of numbers and words in about the mixture of an answer.
+    let item = r#"{"value":1.2345678901234567,"source":"from memory","within_range":true}"#;
+    let count = (size / (item.len() + 1)).max(1);
+    let answer: serde_json::Value =
+        serde_json::from_str(&format!("[{}]", vec![item; count].join(","))).unwrap();
+    let bytes = Bytes::from(vec![b' '; size]);
+    let app = Router::new()
+        .route(
+            "/",
+            post(move |Json(body): Json<serde_json::Value>| {
+                let answer = answer.clone();
+                async move {
+                    std::hint::black_box(body);
+                    Json(answer)
+                }
+            }),
+        )
+        .route(
+            "/bytes",
+            post(move |body: Bytes| {
+                let bytes = bytes.clone();
+                async move {
+                    std::hint::black_box(body);
+                    ([("content-type", "application/json")], bytes)
+                }
+            }),
+        );
     let listener = TcpListener::bind("127.0.0.1:0").await.unwrap();
     std::fs::write(std::env::args().nth(1).unwrap(), listener.local_addr().unwrap().to_string()).unwrap();
     axum::serve(listener, app).await.unwrap();
@@ -87,20 +104,17 @@ async fn compare() {
         let size = once(service.address, &asked).await.len();
         let echo = Server::start("echo", &mut Command::new(std::env::current_exe().unwrap()), Some(size));
         echo.until_ready().await;
-        let plain = post_text("/", body);
+        let (plain, bytes) = (post_text("/", body), post_text("/bytes", body));
         for round in 0..ROUNDS {
+            let raw = measure(&echo, &bytes, connections).await;
             let bare = measure(&echo, &plain, connections).await;
             let ours = measure(&service, &asked, connections).await;
+            println!("{name}, {connections} connections, {} B in, {size} B out, round {round}:", body.len());
+            println!("  bytes echo {raw}\n  JSON echo  {bare}\n  service    {ours}");
             println!(
-                "{name}, {connections} connections, {} B in, {size} B out, round {round}: echo {:.0}/s {:.1} us CPU p99 {:.2} ms; service {:.0}/s {:.1} us CPU p99 {:.2} ms; ratio {:.2}",
-                body.len(),
-                bare.rate,
-                bare.cpu_us,
-                bare.p99_ms,
-                ours.rate,
-                ours.cpu_us,
-                ours.p99_ms,
+                "  service/JSON echo {:.2}, service/bytes echo {:.2}",
                 ours.rate / bare.rate,
+                ours.rate / raw.rate
             );
         }
     }
@@ -200,6 +214,12 @@ struct Figures {
     rate: f64,
     cpu_us: f64,
     p99_ms: f64,
+}
+
+impl std::fmt::Display for Figures {
+    fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        write!(f, "{:>7.0}/s {:>5.1} us CPU p99 {:.2} ms", self.rate, self.cpu_us, self.p99_ms)
+    }
 }
 
 /// Sends the request over and over on each connection, one at a time.

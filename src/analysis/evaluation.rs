@@ -108,7 +108,7 @@ pub fn evaluate(spec: &Spec, include: Include, limits: &[Limit]) -> Result<Evalu
         remedies,
         contributions: include.contributions.then(|| contributions(&resolved, &decision)),
         warnings: warnings(spec, &resolved, &decision),
-        cautions: cautions(spec, &resolved.liquid),
+        cautions: cautions(&spec.liquid, &resolved.liquid),
         decision,
         resolved,
     };

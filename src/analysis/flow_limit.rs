@@ -64,34 +64,62 @@ fn limit(
     }
 }
 
-/// Root of a rising function of ln flow in the accepted range, looked for outward from `start` by its slope.
+/// Root of a rising function of ln flow in the accepted range, looked for outward from `start` by its slope: secant steps, which settle in a few on
+/// functions that are nearly powers of the flow; a bracketing method where they do not.
 fn rising_root(f: &mut impl FnMut(f64) -> f64, start: f64, slope: f64) -> Option<f64> {
     let low_end = libm::log(quantity::FLOW.minimum * quantity::FLOW.to_si);
     let high_end = libm::log(quantity::FLOW.maximum * quantity::FLOW.to_si);
-    let mut from = (start, f(start));
-    let slope = if slope > 0.1 { slope } else { 1.0 };
+    let usable = |slope: f64| slope > 0.05 && slope < 50.0;
+    let mut slope = if usable(slope) { slope } else { 1.0 };
+    let (mut x, mut y) = (start, f(start));
+    let (mut below, mut above) = (None, None);
     for _ in 0..60 {
-        if from.1 == 0.0 {
-            return Some(from.0);
-        }
-        // A step a tenth past the linear guess, so that the next point most likely brackets the root.
-        let step = -from.1 / slope * 1.1 - 1e-3 * from.1.signum();
-        let next = (from.0 + step).clamp(low_end, high_end);
-        let to = (next, f(next));
-        if !to.1.is_finite() {
+        if !y.is_finite() {
             return None;
         }
-        if (to.1 > 0.0) != (from.1 > 0.0) || to.1 == 0.0 {
-            let (low, high) = if from.0 < to.0 { (from, to) } else { (to, from) };
-            return find_root(f, Bracket { low, high }, 1e-9);
+        if y == 0.0 {
+            return Some(x);
         }
-        if next == low_end || next == high_end {
+        let side = if y < 0.0 { &mut below } else { &mut above };
+        *side = Some((x, y));
+        let guess = x - y / slope;
+        if let (Some(low), Some(high)) = (below, above)
+            && !(low.0 < guess && guess < high.0)
+        {
+            return find_root(f, Bracket { low, high }, SETTLED);
+        }
+        let next = guess.clamp(low_end, high_end);
+        let step = next - x;
+        if step == 0.0 {
             return None;
         }
-        from = to;
+        let value = f(next);
+        let secant = (value - y) / step;
+        if usable(secant) {
+            slope = secant;
+        }
+        if value.abs() < EXACT {
+            return Some(next);
+        }
+        if step.abs() < CLOSE && usable(secant) {
+            // One more secant step is exact to rounding; its value need not be looked at.
+            let root = next - value / secant;
+            return (low_end <= root && root <= high_end).then_some(root);
+        }
+        (x, y) = (next, value);
     }
-    None
+    match (below, above) {
+        (Some(low), Some(high)) if low.0 < high.0 => find_root(f, Bracket { low, high }, SETTLED),
+        _ => None,
+    }
 }
+
+/// Tolerance of the bracketing method, in ln flow.
+const SETTLED: f64 = 1e-10;
+/// A function value this small is rounding.
+const EXACT: f64 = 1e-14;
+/// A step this small, in ln flow, is followed by one last secant step, whose error is near its square.
+const CLOSE: f64 = 1e-5;
 
 #[cfg(test)]
 mod tests {

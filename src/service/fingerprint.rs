@@ -1,6 +1,6 @@
 //! The fingerprint of a result: which request, answered by which model, from which catalogue.
 
-use std::{fmt::Write as _, io, sync::OnceLock};
+use std::{io, sync::OnceLock};
 
 use serde::Serialize;
 use serde_json::ser::Formatter;
@@ -29,14 +29,15 @@ impl ModelAnswer {
     /// The model that answered `request`, a request with its defaults filled in and its members in canonical order.
     #[must_use]
     pub fn of<T: Serialize>(request: &T, coefficients: &'static str) -> Self {
-        let mut hash = Hasher(Sha256::new());
-        // Writing into a hash cannot fail, and a request is made of strings, lists and finite numbers.
-        let _ = request.serialize(&mut serde_json::Serializer::with_formatter(&mut hash, Canonical));
-        let Hasher(mut hash) = hash;
-        hash.update([0]);
-        hash.update(VERSION);
-        hash.update([0]);
-        hash.update(catalogue_digest());
+        let mut bytes = Vec::with_capacity(1024);
+        // Writing into memory cannot fail, and a request is made of strings, lists and finite numbers.
+        let _ = request.serialize(&mut serde_json::Serializer::with_formatter(&mut bytes, Canonical));
+        let mut hash = Sha256::new();
+        bytes.push(0);
+        bytes.extend_from_slice(VERSION.as_bytes());
+        bytes.push(0);
+        bytes.extend_from_slice(catalogue_digest().as_bytes());
+        hash.update(&bytes);
         Self { version: VERSION, coefficients, fingerprint: hexadecimal(&hash.finalize()) }
     }
 }
@@ -63,23 +64,10 @@ pub fn catalogue_digest() -> &'static str {
 }
 
 fn hexadecimal(bytes: &[u8]) -> String {
-    bytes.iter().fold(String::with_capacity(2 * bytes.len()), |mut text, byte| {
-        let _ = write!(text, "{byte:02x}");
-        text
-    })
-}
-
-struct Hasher(Sha256);
-
-impl io::Write for Hasher {
-    fn write(&mut self, bytes: &[u8]) -> io::Result<usize> {
-        self.0.update(bytes);
-        Ok(bytes.len())
-    }
-
-    fn flush(&mut self) -> io::Result<()> {
-        Ok(())
-    }
+    const DIGITS: [char; 16] =
+        ['0', '1', '2', '3', '4', '5', '6', '7', '8', '9', 'a', 'b', 'c', 'd', 'e', 'f'];
+    let digit = |nibble: u8| DIGITS[usize::from(nibble & 15)];
+    bytes.iter().flat_map(|byte| [digit(byte >> 4), digit(*byte)]).collect()
 }
 
 /// Numbers as RFC 8785 wants them: as ECMAScript writes them. (Strings already are: serde_json escapes what it must, in lower case, and no more.)

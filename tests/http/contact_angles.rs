@@ -136,7 +136,7 @@ fn every_model_stands_in_every_answer_with_its_uncertainty_or_its_reason() {
 #[test]
 fn what_is_missing_is_said_not_filled_in() {
     let components = json!({"components": {"dispersive_mn_m": 30, "polar_mn_m": 5}});
-    let unsplit = about(like_water(), components.clone());
+    let unsplit = about(like_water(), components);
     let lacking = estimate(&unsplit, "owens_wendt");
     assert_eq!((&lacking["applies"], &lacking["contact_angle_deg"]), (&false.into(), &Value::Null));
     assert!(lacking["detail"].as_str().unwrap().contains("dispersive share"));

@@ -122,7 +122,6 @@ pub async fn evaluate_batch(
     let batch = Arc::new(Batch { bytes, cases, base_path: state.settings.base_path.as_str().to_owned() });
     let count = batch.cases.len();
     let work = stream::iter((0..count).step_by(AT_A_TIME)).map({
-        let batch = batch.clone();
         move |from| {
             let batch = batch.clone();
             tokio::task::spawn_blocking(move || batch.answers(from..(from + AT_A_TIME).min(count)))

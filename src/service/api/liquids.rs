@@ -13,15 +13,10 @@ use utoipa::ToSchema;
 use self::conditions::{Asked, ConditionsAnswer, ConditionsQuery, Found, Pairs, pointer_in_query};
 use super::{notice::NoticeAnswer, property::PropertyAnswer, quantity::Number};
 use crate::{
-    analysis::{
-        cautions::cautions,
-        notice::Notice,
-        spec::{LiquidSpec, OuterFace, SectionSpec, Spec, SurfaceSpec, Uncertainties},
-    },
+    analysis::{cautions::cautions, notice::Notice},
     physics::{
         liquid::{Conditions, Entry, Hazard, Properties, catalogue, find},
         quantity::{DENSITY, SURFACE_TENSION, VISCOSITY},
-        separation::closed_form::DEFAULT_SET,
     },
     service::{
         explain::invalid,
@@ -210,7 +205,7 @@ pub async fn liquid(
     let entry = find(&id).ok_or_else(|| not_in_catalogue("liquid", &id, catalogue().iter().map(|e| e.id)))?;
     let found = Asked::read(&pairs, false).resolve(entry).map_err(invalid)?;
     let warnings = warnings(&found);
-    let mut cautions = cautions(&question(found.spec), &found.properties);
+    let mut cautions = cautions(&found.spec, &found.properties);
     for caution in &mut cautions {
         caution.pointer = caution.pointer.map(pointer_in_query);
     }
@@ -280,28 +275,6 @@ pub(super) fn leaves_film(pointer: &'static str) -> Notice {
         pointer,
         "This liquid leaves protein, fat, surfactant or alcohol on the lip: after the first wetting expect a receding angle near 0°, and ask for measured angles.",
     )
-}
-
-/// The question that cautions are asked about. They look at its liquid alone; the rest is a plain level lip.
-fn question(liquid: LiquidSpec) -> Spec {
-    Spec {
-        section: SectionSpec::Sheet { width_mm: 24.0 },
-        radius_mm: 0.5,
-        turn_deg: 90.0,
-        slope_deg: 0.0,
-        length_mm: 0.0,
-        surface: SurfaceSpec::Measured {
-            contact_angle_deg: Some(90.0),
-            advancing_deg: None,
-            receding_deg: None,
-        },
-        liquid,
-        flow_ml_s: 25.0,
-        outer_face: OuterFace::Dry,
-        confidence: 0.95,
-        uncertainty: Uncertainties::default(),
-        coefficients: DEFAULT_SET,
-    }
 }
 
 /// What the correlations of an entry give across its region: for the catalogue's digest.
