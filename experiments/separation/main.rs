@@ -4,8 +4,8 @@
 //! separation-experiment design                         print the designed runs
 //! separation-experiment run DATA.csv [options]         compute those not yet in DATA.csv, appending a row for each
 //! separation-experiment repeat EARLIER.csv DATA.csv    repeat earlier runs of another program
-//!   --cells N      cells per thickness (default 8; 12 for small angles and sharp edges is chosen by itself)
-//!   --rate X       fall of ln We per h/U (default 0.015)
+//!   --cells N      cells per thickness (default 16; up to 8 more, and a denser gas, if the run diverges)
+//!   --tolerance X  width of the bracket (default 0.08)
 //!   --last N       stop after run N
 //!   --pause FILE   wait while FILE exists
 //! ```
@@ -24,12 +24,13 @@ use std::sync::atomic::AtomicBool;
 use std::time::{Duration, Instant};
 
 use design::{Case, RUNS, SEED, case};
+use dribble_risk::physics::separation::free_surface::outcome::{Onset, Reason};
 use dribble_risk::physics::separation::free_surface::ramp::{Plan, Watch, critical_weber};
 
 /// Options of the command line.
 struct Options {
     cells: Option<u32>,
-    rate: f64,
+    tolerance: f64,
     last: usize,
     pause: Option<PathBuf>,
 }
@@ -60,11 +61,11 @@ fn main() -> Result<(), Box<dyn Error>> {
 }
 
 fn parse(words: &[&str]) -> Result<Options, Box<dyn Error>> {
-    let mut options = Options { cells: None, rate: 0.015, last: usize::MAX, pause: None };
+    let mut options = Options { cells: None, tolerance: 0.08, last: usize::MAX, pause: None };
     for pair in words.chunks(2) {
         match pair {
             ["--cells", value] => options.cells = Some(value.parse()?),
-            ["--rate", value] => options.rate = value.parse()?,
+            ["--tolerance", value] => options.tolerance = value.parse()?,
             ["--last", value] => options.last = value.parse()?,
             ["--pause", value] => options.pause = Some(PathBuf::from(value)),
             other => return Err(format!("unknown option {other:?}").into()),
@@ -89,18 +90,29 @@ fn compute(cases: &[Case], data: &Path, options: &Options) -> Result<(), Box<dyn
             std::thread::sleep(Duration::from_secs(2));
         }
     };
-    for case in cases.iter().filter(|case| case.run <= options.last && !done.contains(&case.run.to_string())) {
+    for case in cases.iter().filter(|case| case.run <= options.last && !done.contains(&case.run.to_string()))
+    {
         let problem = case.problem()?;
-        // Small angles and edges sharper than two cells need more cells (found by trial).
-        let fine = case.contact_angle_deg < 45.0 || case.radius_ratio < 0.25;
-        let cells = options.cells.unwrap_or(if fine { 12 } else { 8 });
-        let mut plan = Plan::with_cells(&problem, cells, 1)?;
-        plan.rate = options.rate;
-        plan.budget = f64::INFINITY;
         let started = Instant::now();
         let watch = Watch { cancel: &never, progress: &|_| pause() };
-        let ramp = critical_weber::<f32>(&problem, &plan, watch)?;
-        let line = row::result(case, &ramp, started.elapsed().as_secs_f64());
+        let cells = options.cells.unwrap_or(16);
+        // A run that diverges is tried with a denser gas, then on finer grids.
+        let tries = [(cells, 0.01), (cells, 0.02), (cells + 4, 0.02), (cells + 8, 0.02)].into_iter();
+        let mut last = None;
+        for (cells, density_ratio) in tries {
+            let mut plan = Plan::with_cells(&problem, cells, 1)?;
+            plan.grid.density_ratio = density_ratio;
+            plan.tolerance = options.tolerance;
+            plan.budget = f64::INFINITY;
+            let search = critical_weber::<f32>(&problem, &plan, watch)?;
+            let diverged = matches!(search.onset, Onset::NotConverged { reason: Reason::Diverged, .. });
+            last = Some((search, density_ratio));
+            if !diverged {
+                break;
+            }
+        }
+        let Some((search, density_ratio)) = last else { continue };
+        let line = row::result(case, &search, density_ratio, started.elapsed().as_secs_f64());
         let mut file = OpenOptions::new().append(true).open(data)?;
         writeln!(file, "{line}")?;
     }

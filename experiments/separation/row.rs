@@ -2,7 +2,7 @@
 
 use std::error::Error;
 
-use dribble_risk::physics::separation::free_surface::outcome::{Onset, Ramp};
+use dribble_risk::physics::separation::free_surface::outcome::{Onset, Search};
 use dribble_risk::physics::separation::free_surface::problem::Approach;
 
 use crate::design::Case;
@@ -12,10 +12,10 @@ pub(crate) const DESIGN_HEADER: &str =
     "run,held_out,approach,radius_ratio,contact_angle_deg,turn_deg,reynolds,froude,slope_deg";
 
 /// Columns of the results. `kind`: found; below (still separated at that We); choked (film choked there); above (clung there from the start);
-/// or the reason why there is no answer. `first_signs`: We at which the contact line passed one thickness beyond the arc.
-/// `deflections`: We:degrees:contact position, by falling We.
+/// or the reason why there is no answer. `attached_at`: highest We seen to attach. `quick_ramp`: We at which the stream attached on the quick way down.
+/// `deflections`: We:degrees:contact position, by rising We.
 pub(crate) const RESULT_HEADER: &str = "run,held_out,approach,radius_ratio,contact_angle_deg,turn_deg,reynolds,froude,slope_deg,\
-kind,critical_weber,first_signs,thickness_before,thickness_at_arc,flow,momentum,cells,seconds,deflections";
+kind,critical_weber,attached_at,quick_ramp,thickness_before,thickness_at_arc,flow,momentum,cells,density_ratio,seconds,deflections";
 
 pub(crate) fn design(case: &Case) -> String {
     let approach = match case.approach {
@@ -35,16 +35,17 @@ pub(crate) fn design(case: &Case) -> String {
     )
 }
 
-pub(crate) fn result(case: &Case, ramp: &Ramp, seconds: f64) -> String {
-    let (kind, critical, signs) = match ramp.onset {
-        Onset::Found { critical, first_signs } => ("found", critical, Some(first_signs)),
+pub(crate) fn result(case: &Case, search: &Search, density_ratio: f64, seconds: f64) -> String {
+    let (kind, critical, attached) = match search.onset {
+        Onset::Found { critical, attached, .. } => ("found", critical, Some(attached)),
         Onset::Below { weber, choked: false } => ("below", weber, None),
         Onset::Below { weber, choked: true } => ("choked", weber, None),
         Onset::Above { weber } => ("above", weber, None),
         Onset::NotConverged { weber, reason } => (reason.as_str(), weber, None),
     };
-    let signs = signs.map_or_else(String::new, |signs| format!("{signs:.3}"));
-    let settled = ramp.settled.map_or_else(
+    let [attached, passed] = [attached, search.on_the_way]
+        .map(|weber| weber.map_or_else(String::new, |weber| format!("{weber:.3}")));
+    let settled = search.settled.map_or_else(
         || ",,,".to_owned(),
         |read| {
             format!(
@@ -53,15 +54,15 @@ pub(crate) fn result(case: &Case, ramp: &Ramp, seconds: f64) -> String {
             )
         },
     );
-    let deflections: Vec<String> = ramp
+    let deflections: Vec<String> = search
         .deflections
         .iter()
         .map(|at| format!("{:.2}:{:.1}:{:.2}", at.weber, at.angle.to_degrees(), at.contact_position))
         .collect();
     format!(
-        "{},{kind},{critical:.3},{signs},{settled},{},{seconds:.0},{}",
+        "{},{kind},{critical:.3},{attached},{passed},{settled},{},{density_ratio},{seconds:.0},{}",
         design(case),
-        ramp.cells,
+        search.cells,
         deflections.join(" ")
     )
 }

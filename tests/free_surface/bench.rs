@@ -39,8 +39,19 @@ pub(crate) fn at_rest(
     contact: ContactAngle,
 ) -> Lattice<f32> {
     let xi = fluids.interface;
-    let start = |x: f64, y: f64| Seed { phase: 0.5 + 0.5 * (2.0 * inside(x, y) / xi).tanh(), velocity: [0.0; 2] };
-    let setup = Setup { columns, rows, distance, imposed: &|_, _| None, start: &start, ends, sponge: 0, fluids, contact };
+    let start =
+        |x: f64, y: f64| Seed { phase: 0.5 + 0.5 * (2.0 * inside(x, y) / xi).tanh(), velocity: [0.0; 2] };
+    let setup = Setup {
+        columns,
+        rows,
+        distance,
+        imposed: &|_, _| None,
+        start: &start,
+        ends,
+        sponge: 0,
+        fluids,
+        contact,
+    };
     Lattice::new(&setup, 1).unwrap()
 }
 
@@ -53,7 +64,11 @@ pub(crate) fn closed(columns: usize, rows: usize) -> impl Fn(f64, f64) -> f64 {
 }
 
 /// Points where the phase crosses one half between neighbours, at least `clear` from the walls.
-pub(crate) fn interface(lattice: &Lattice<f32>, distance: &dyn Fn(f64, f64) -> f64, clear: f64) -> Vec<(f64, f64)> {
+pub(crate) fn interface(
+    lattice: &Lattice<f32>,
+    distance: &dyn Fn(f64, f64) -> f64,
+    clear: f64,
+) -> Vec<(f64, f64)> {
     let mut points = vec![];
     for j in 1..lattice.rows() - 1 {
         for i in 1..lattice.columns() - 1 {

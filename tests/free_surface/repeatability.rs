@@ -61,8 +61,15 @@ fn direction<T: Real>() -> (f64, f64) {
 #[test]
 fn single_precision_agrees_with_double() {
     let (single, double) = (direction::<f32>(), direction::<f64>());
-    println!("single less double: {:.1e} rad, {:.1e} of the momentum", single.0 - double.0, single.1 - double.1);
-    assert!((single.0 - double.0).abs() < 2e-3 && (single.1 - double.1).abs() < 1e-3, "{single:?} {double:?}");
+    println!(
+        "single less double: {:.1e} rad, {:.1e} of the momentum",
+        single.0 - double.0,
+        single.1 - double.1
+    );
+    assert!(
+        (single.0 - double.0).abs() < 2e-3 && (single.1 - double.1).abs() < 1e-3,
+        "{single:?} {double:?}"
+    );
 }
 
 #[test]
@@ -75,8 +82,9 @@ fn a_raised_flag_stops_it() {
     };
     let problem = right_angle();
     let plan = Plan::with_cells(&problem, 6, 2).unwrap();
-    let ramp = critical_weber::<f32>(&problem, &plan, Watch { cancel: &flag, progress: &progress }).unwrap();
-    assert!(matches!(ramp.onset, Onset::NotConverged { reason: Reason::Cancelled, .. }), "{ramp:?}");
+    let search =
+        critical_weber::<f32>(&problem, &plan, Watch { cancel: &flag, progress: &progress }).unwrap();
+    assert!(matches!(search.onset, Onset::NotConverged { reason: Reason::Cancelled, .. }), "{search:?}");
     assert_eq!(calls.get(), 3);
 }
 
@@ -106,5 +114,8 @@ fn what_does_not_fit_is_refused_with_what_would() {
     let mut plan = Plan::with_cells(&problem, 12, 1).unwrap();
     plan.budget = 1e6;
     let fault = critical_weber::<f32>(&problem, &plan, watch()).unwrap_err();
-    assert!(matches!(fault, SolverFault::Budget { needed, allowed } if needed > 1e7 && allowed == 1e6), "{fault}");
+    assert!(
+        matches!(fault, SolverFault::Budget { needed, allowed } if needed > 1e7 && allowed == 1e6),
+        "{fault}"
+    );
 }

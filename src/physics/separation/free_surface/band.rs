@@ -3,13 +3,16 @@
 //! What a band computes beyond its own rows (the phase in its halo) is the same arithmetic on the same numbers as in the neighbour that owns
 //! them, so results do not depend on how many bands there are.
 
+use std::ops::Range;
+
 use super::kernel::{Media, Row, STREAMED, collide, stream_moments, stream_phase};
 use super::layout::{
-    CX, CY, FIELDS, FLUX_X, FLUX_Y, HALO, MOVE_X, MOVE_Y, PHASE, REST, STRESS_XX, STRESS_XY, STRESS_YY, WEIGHT,
+    CX, CY, FIELDS, FLUX_X, FLUX_Y, HALO, MOVE_X, MOVE_Y, PHASE, REST, STRESS_XX, STRESS_XY, STRESS_YY,
+    WEIGHT,
 };
 use super::real::Real;
 use super::sides::{Sides, settle_columns, settle_row};
-use super::wall::{Cell, Link, Walls};
+use super::wall::{Cell, Link, Pin, Walls};
 
 /// What all bands share: never changes while they run.
 #[derive(Debug)]
@@ -34,10 +37,20 @@ pub(super) struct Band<T> {
     pub next: Vec<T>,
     phase: Vec<T>,
     streamed: Vec<T>,
+    /// Springs of the ghosts in the own rows and one more on either side.
+    pins: Vec<Pin<T>>,
+}
+
+/// Rows whose ghosts a band writes.
+fn ghost_rows(first: usize, rows: usize, all: usize) -> Range<usize> {
+    first.saturating_sub(1)..(first + rows + 1).min(all)
 }
 
 impl<T: Real> Band<T> {
-    pub(super) fn new(first: usize, rows: usize, columns: usize) -> Self {
+    pub(super) fn new(first: usize, rows: usize, plan: &Plan<T>) -> Self {
+        let columns = plan.columns;
+        let ghosts = ghost_rows(first, rows, plan.rows);
+        let pins = plan.walls.ghost_rows[ghosts.end] - plan.walls.ghost_rows[ghosts.start];
         let kept = rows + 2 * HALO;
         Self {
             first,
@@ -46,6 +59,7 @@ impl<T: Real> Band<T> {
             next: vec![T::default(); kept * FIELDS * columns],
             phase: vec![T::default(); kept * columns],
             streamed: vec![T::default(); STREAMED * columns],
+            pins: vec![Pin::default(); pins],
         }
     }
 
@@ -107,10 +121,10 @@ impl<T: Real> Band<T> {
             }
         }
         let shift = self.first * nx;
-        let rows = self.first.saturating_sub(1)..(self.first + self.rows + 1).min(plan.rows);
+        let rows = ghost_rows(self.first, self.rows, plan.rows);
         let ghosts = plan.walls.ghost_rows[rows.start]..plan.walls.ghost_rows[rows.end];
-        for ghost in &plan.walls.ghosts[ghosts] {
-            ghost.write(&mut self.phase, shift);
+        for (ghost, pin) in plan.walls.ghosts[ghosts].iter().zip(&mut self.pins) {
+            ghost.write(&mut self.phase, shift, pin);
         }
         if plan.sides.periodic {
             for row in rows {

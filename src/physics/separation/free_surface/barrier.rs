@@ -16,7 +16,12 @@ pub(super) struct Barrier {
 
 impl Barrier {
     pub(super) const fn new(parties: usize) -> Self {
-        Self { parties, arrived: AtomicUsize::new(0), round: AtomicUsize::new(0), broken: AtomicBool::new(false) }
+        Self {
+            parties,
+            arrived: AtomicUsize::new(0),
+            round: AtomicUsize::new(0),
+            broken: AtomicBool::new(false),
+        }
     }
 
     /// Waits for the others; `false` if one of them is gone for good.

@@ -147,8 +147,10 @@ fn stream_flux<T: Real>([below, here, above]: [&[T]; 3], out: &mut [T], nx: usiz
         let from_se = se[i] + (sey[i] - sex[i]);
         let from_nw = nw[i] + (nwx[i] - nwy[i]);
         let from_ne = ne[i] - (nex[i] + ney[i]);
-        flux[0][i] = w1 * ((w[i] + wx[i]) - (e[i] - ex[i])) + w2 * ((from_sw + from_nw) - (from_se + from_ne));
-        flux[1][i] = w1 * ((s[i] + sy[i]) - (n[i] - ny[i])) + w2 * ((from_sw + from_se) - (from_nw + from_ne));
+        flux[0][i] =
+            w1 * ((w[i] + wx[i]) - (e[i] - ex[i])) + w2 * ((from_sw + from_nw) - (from_se + from_ne));
+        flux[1][i] =
+            w1 * ((s[i] + sy[i]) - (n[i] - ny[i])) + w2 * ((from_sw + from_se) - (from_nw + from_ne));
     }
     for (k, sum) in flux.iter().enumerate() {
         out[(6 + k) * nx + start..(6 + k) * nx + start + LANES].copy_from_slice(sum);
@@ -196,7 +198,8 @@ pub(super) fn collide<T: Real>(row: Row<'_, T>, media: &Media<T>, out: &mut [T],
             let phi = o[i];
             let gx = g1 * (e[i] - w[i]) + g2 * ((ne[i] - nw[i]) + (se[i] - sw[i]));
             let gy = g1 * (n[i] - s[i]) + g2 * ((ne[i] - se[i]) + (nw[i] - sw[i]));
-            let lap = l1 * ((e[i] + w[i]) + (n[i] + s[i])) + l2 * ((ne[i] + nw[i]) + (se[i] + sw[i])) - l0 * phi;
+            let lap =
+                l1 * ((e[i] + w[i]) + (n[i] + s[i])) + l2 * ((ne[i] + nw[i]) + (se[i] + sw[i])) - l0 * phi;
             let low = if phi < zero { zero } else { phi };
             let held = if low > one { one } else { low };
             let rho = m.rho_gas + held * m.rho_step;

@@ -17,7 +17,9 @@ use super::wall::{Cell, Ground, Walls};
 #[derive(Debug, Clone, Copy, PartialEq, Eq, thiserror::Error)]
 pub enum LatticeFault {
     /// The columns are not 2 more than a multiple of 16, or the rows fewer than 8.
-    #[error("a lattice of {columns} by {rows} cells: columns must be 2 more than a multiple of 16, rows at least 8")]
+    #[error(
+        "a lattice of {columns} by {rows} cells: columns must be 2 more than a multiple of 16, rows at least 8"
+    )]
     Shape {
         /// Columns asked for.
         columns: usize,
@@ -86,7 +88,7 @@ impl<T: Real> Lattice<T> {
         let count = threads.clamp(1, most_bands(ny));
         let bands = (0..count)
             .map(|band| (band * ny / count, (band + 1) * ny / count))
-            .map(|(from, to)| Band::new(from, to - from, nx))
+            .map(|(from, to)| Band::new(from, to - from, &plan))
             .collect();
         let post = (1..count).map(|_| Exchange::new(HALO * FIELDS * nx)).collect();
         let mut lattice = Self { plan, fluids: setup.fluids, bands, post, steps: 0 };
@@ -181,7 +183,9 @@ impl<T: Real> Lattice<T> {
                 let first = bands.next();
                 let workers: Vec<_> = bands
                     .map(|(k, band)| {
-                        scope.spawn(move || work(band, k, Share { plan, media, post, barrier, cancel, agreed, start, steps }))
+                        scope.spawn(move || {
+                            work(band, k, Share { plan, media, post, barrier, cancel, agreed, start, steps })
+                        })
                     })
                     .collect();
                 let done = first.map_or(0, |(k, band)| {

@@ -3,27 +3,25 @@
 use core::f64::consts::PI;
 use std::sync::atomic::{AtomicBool, Ordering};
 
-use super::outcome::{Deflection, Onset, Outcome, Ramp, Reason, SolverFault, State, Threshold};
+use super::outcome::{Deflection, Onset, Outcome, Reason, Search, SolverFault, State, Threshold};
 use super::problem::{Approach, Grid, Problem};
 use super::real::Real;
 use super::stream::{Reading, Stream};
 
 /// The contact line has run down the wall when it is this many thicknesses beyond the arc.
 pub const RUN_BEYOND_ARC: f64 = 2.0;
-/// It shows first signs of it here.
-const SIGNS_BEYOND_ARC: f64 = 1.0;
 /// The approach film is choked when it is this many times as thick two thicknesses before the arc as it was when settled.
 const CHOKED: f64 = 1.5;
 /// Time between readings, in h/U.
 const READING_INTERVAL: f64 = 0.5;
-/// Lowest Weber number of a ramp: at 2 no free sheet exists (two surfaces pull 2γ against ρU²h), so nothing is to be found below.
-pub const LOWEST_WEBER: f64 = 1.2;
+/// Lowest Weber number of a search: at 2 no free sheet exists (two surfaces pull 2γ against ρU²h), so nothing is to be found below.
+pub const LOWEST_WEBER: f64 = 1.5;
 /// Highest Weber number that a ramp starts from.
 pub const HIGHEST_WEBER: f64 = 400.0;
 /// Fall of ln We per h/U on the first, quick way down.
 const QUICK: f64 = 0.05;
-/// The second way down starts this much above where the first ended.
-const RESTART: f64 = 1.9;
+/// Thickness two h before the arc that a film which has not been seen settled is taken to have, in h.
+const UNSETTLED: f64 = 1.1;
 
 /// How to compute.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -32,8 +30,8 @@ pub struct Plan {
     pub grid: Grid,
     /// Weber number that the first ramp starts from; raised if the stream clings there.
     pub start: f64,
-    /// Fall of ln We per h/U on the slow ramp. 0.006..0.03; the threshold read lags by about 8 times this.
-    pub rate: f64,
+    /// The search ends when the Weber numbers on either side of the threshold differ by less than this part.
+    pub tolerance: f64,
     /// Most cell updates allowed.
     pub budget: f64,
     /// Threads. Results do not depend on it.
@@ -47,17 +45,27 @@ impl Plan {
     /// [`SolverFault::Problem`] if the problem is out of range or the grid too coarse for it.
     pub fn with_cells(problem: &Problem, cells: u32, threads: usize) -> Result<Self, SolverFault> {
         let grid = Grid::with_cells(problem, cells)?;
-        Ok(Self { grid, start: starting_weber(problem), rate: 0.012, budget: 3e10, threads })
+        Ok(Self { grid, start: starting_weber(problem), tolerance: 0.08, budget: 3e10, threads })
     }
 
-    /// Cell updates that a whole ramp takes at most, about.
+    /// Cells of the lattice.
+    fn cells_of(&self, problem: &Problem) -> f64 {
+        let (columns, rows) = self.grid.shape(problem);
+        (columns * rows) as f64
+    }
+
+    /// Longest time that a stream is held, in h/U.
+    fn patience(&self, problem: &Problem) -> f64 {
+        60.0 + 2.0 * settling_time(problem, &self.grid)
+    }
+
+    /// Cell updates that a search takes, about: the quick ramp and six streams held.
     #[must_use]
     pub fn work(&self, problem: &Problem) -> f64 {
-        let (columns, rows) = self.grid.shape(problem);
         let settle = settling_time(problem, &self.grid);
         let quick = libm::log(self.start / LOWEST_WEBER) / QUICK;
-        let slow = (libm::log(RESTART) + 0.3) / self.rate;
-        (2.0 * settle + quick + slow) * self.grid.steps_per_turnover() * (columns * rows) as f64
+        let held = 6.0 * (settle + 25.0);
+        (settle + quick + held) * self.grid.steps_per_turnover() * self.cells_of(problem)
     }
 }
 
@@ -156,49 +164,11 @@ pub fn run_at<T: Real>(
     if !(0.5..=1000.0).contains(&weber) {
         return Err(SolverFault::Weber(weber));
     }
-    let (columns, rows) = plan.grid.shape(problem);
     let steps = turnovers * plan.grid.steps_per_turnover();
-    afford(steps * (columns * rows) as f64, plan)?;
-    let interval = (READING_INTERVAL * plan.grid.steps_per_turnover()).round() as u32;
+    afford(steps * plan.cells_of(problem), plan)?;
     let stream = Stream::separated(problem, &plan.grid, weber, plan.threads)?;
-    let mut walk = Walk { stream, watch, interval, total: steps, before: 0 };
-    let settle = settling_time(problem, &plan.grid);
-    let mut calm = 0;
-    let mut last: Option<Reading> = None;
-    let mut reading = walk.stream.read();
-    let mut state = State::NotConverged(Reason::StillMoving);
-    let mut time = 0.0;
-    while time < turnovers {
-        time += READING_INTERVAL;
-        match walk.pace() {
-            Ok(read) => reading = read,
-            Err((reason, read)) => {
-                reading = read;
-                state = State::NotConverged(reason);
-                break;
-            }
-        }
-        if let Some(found) = judge(problem, &reading, 1.1) {
-            state = found;
-            if found != State::Choked || time > settle {
-                break;
-            }
-        }
-        let still = last.is_some_and(|last| {
-            (last.contact_position - reading.contact_position).abs() < 0.01
-                && match (last.ejection_angle, reading.ejection_angle) {
-                    (Some(a), Some(b)) => (a - b).abs() < 0.05 * PI / 180.0,
-                    _ => false,
-                }
-        });
-        calm = if still { calm + 1 } else { 0 };
-        if calm >= 12 && time > settle {
-            state = State::Separated;
-            break;
-        }
-        last = Some(reading);
-    }
-    let outcome = Outcome { state, weber, reading, steps: walk.stream.lattice().steps() };
+    let mut walk = Walk { stream, watch, interval: interval(plan), total: steps, before: 0 };
+    let outcome = rest(problem, &mut walk, settling_time(problem, &plan.grid), turnovers, UNSETTLED);
     Ok((outcome, walk.stream))
 }
 
@@ -209,107 +179,240 @@ fn afford(needed: f64, plan: &Plan) -> Result<(), SolverFault> {
     Ok(())
 }
 
-/// Finds the critical Weber number on one grid: a quick ramp down from a separated stream, then a slow one from a little above where the
-/// first ended.
+/// Finds the critical Weber number on one grid.
+///
+/// First a quick ramp down from a separated stream, which tells roughly where: near the threshold the stream gives way so slowly that a ramp passes it
+/// before anything shows (the lag in ln We goes as the rate to the power ⅔, as at any fold; measured 6 × rate^⅔, rate per h/U). Then streams
+/// held at fixed Weber numbers, each from a fresh separated start, until they attach or rest; their Weber numbers close in on the threshold.
 ///
 /// # Errors
 /// [`SolverFault`] if the problem, the grid or the budget do not allow it.
-pub fn critical_weber<T: Real>(problem: &Problem, plan: &Plan, watch: Watch<'_>) -> Result<Ramp, SolverFault> {
+pub fn critical_weber<T: Real>(
+    problem: &Problem,
+    plan: &Plan,
+    watch: Watch<'_>,
+) -> Result<Search, SolverFault> {
     problem.check()?;
     afford(plan.work(problem), plan)?;
-    let mut ramp = Ramp {
+    let mut search = Search {
         onset: Onset::Above { weber: plan.start },
+        on_the_way: None,
         deflections: vec![],
         settled: None,
         cells: plan.grid.cells,
         steps: 0,
     };
     let mut start = plan.start;
-    loop {
-        ramp.onset = descend::<T>(problem, plan, start, QUICK, watch, &mut ramp)?;
-        match ramp.onset {
-            Onset::Above { .. } if start < HIGHEST_WEBER => start = (2.5 * start).min(HIGHEST_WEBER),
-            Onset::Found { critical, .. } if critical > 0.8 * start && start < HIGHEST_WEBER => start *= 2.0,
-            _ => break,
+    let ended = loop {
+        let ended = descend::<T>(problem, plan, start, watch, &mut search)?;
+        let early = match ended {
+            Descent::Attached(weber) => weber > 0.5 * start,
+            Descent::Choked(weber) => weber > 0.8 * start,
+            Descent::Lowest | Descent::Failed(..) => false,
+        };
+        if !early || start >= HIGHEST_WEBER {
+            break ended;
         }
-    }
-    let mut again = match ramp.onset {
-        Onset::Found { first_signs, .. } => first_signs * RESTART,
-        // A jump set off by the quick descent need not occur on a slow one.
-        Onset::Below { weber, choked: true } => weber * RESTART,
-        _ => return Ok(ramp),
+        start = (2.5 * start).min(HIGHEST_WEBER);
     };
-    loop {
-        ramp.onset = descend::<T>(problem, plan, again, plan.rate, watch, &mut ramp)?;
-        match ramp.onset {
-            Onset::Above { .. } if again < 2.0 * HIGHEST_WEBER => again *= 1.5,
-            Onset::Found { critical, .. } if critical > 0.9 * again && again < 2.0 * HIGHEST_WEBER => again *= 1.3,
-            _ => return Ok(ramp),
+    let first = match ended {
+        Descent::Attached(weber) => {
+            search.on_the_way = Some(weber);
+            (1.5 * weber).max(LOWEST_WEBER)
         }
+        Descent::Choked(weber) => (1.5 * weber).max(LOWEST_WEBER),
+        Descent::Lowest => LOWEST_WEBER,
+        Descent::Failed(weber, reason) => {
+            search.onset = Onset::NotConverged { weber, reason };
+            return Ok(search);
+        }
+    };
+    search.onset = close_in::<T>(problem, plan, first, watch, &mut search)?;
+    search.deflections.sort_by(|a, b| a.weber.total_cmp(&b.weber));
+    Ok(search)
+}
+
+/// Closes in on the threshold with streams held at fixed Weber numbers, the first at `first`.
+fn close_in<T: Real>(
+    problem: &Problem,
+    plan: &Plan,
+    first: f64,
+    watch: Watch<'_>,
+    search: &mut Search,
+) -> Result<Onset, SolverFault> {
+    let (mut clings, mut leaves) = (None, None);
+    let mut choked = false;
+    let mut undecided = 0;
+    let mut weber = first;
+    loop {
+        let held = hold::<T>(problem, plan, weber, watch, search)?;
+        match held.state {
+            State::Separated => leaves = Some(weber),
+            State::Attached | State::Choked => {
+                clings = Some(weber);
+                choked = held.state == State::Choked;
+            }
+            // Too near the threshold to tell in the time allowed: one such point is the threshold.
+            State::NotConverged(Reason::StillMoving) if undecided == 0 => {
+                undecided += 1;
+                weber *= 1.0 + 0.6 * plan.tolerance;
+                continue;
+            }
+            State::NotConverged(reason) => return Ok(Onset::NotConverged { weber, reason }),
+        }
+        weber = match (clings, leaves) {
+            (Some(low), Some(high)) if high / low < 1.0 + plan.tolerance => {
+                return Ok(if choked {
+                    Onset::Below { weber: high, choked }
+                } else {
+                    Onset::Found { critical: (low * high).sqrt(), attached: low, separated: high }
+                });
+            }
+            (Some(low), Some(high)) if high <= low => {
+                return Ok(Onset::NotConverged { weber: high, reason: Reason::StillMoving });
+            }
+            (Some(low), Some(high)) => (low * high).sqrt(),
+            (Some(low), None) if low > 2.0 * HIGHEST_WEBER => return Ok(Onset::Above { weber: low }),
+            (Some(low), None) => 1.3 * low,
+            (None, Some(high)) if high <= LOWEST_WEBER => {
+                return Ok(Onset::Below { weber: high, choked: false });
+            }
+            (None, high) => (high.unwrap_or(weber) / 1.3).max(LOWEST_WEBER),
+        };
     }
 }
 
-/// One way down from a fresh separated stream at `start`.
+/// A stream held at one Weber number until it attaches, chokes or rests.
+fn hold<T: Real>(
+    problem: &Problem,
+    plan: &Plan,
+    weber: f64,
+    watch: Watch<'_>,
+    search: &mut Search,
+) -> Result<Outcome, SolverFault> {
+    let settled = search.settled.map_or(1.1, |reading| reading.thickness_before);
+    let total = plan.work(problem) / plan.cells_of(problem);
+    let stream = Stream::<T>::separated(problem, &plan.grid, weber, plan.threads)?;
+    let mut walk = Walk { stream, watch, interval: interval(plan), total, before: search.steps };
+    let outcome =
+        rest(problem, &mut walk, settling_time(problem, &plan.grid), plan.patience(problem), settled);
+    search.steps += outcome.steps;
+    if let (State::Separated, Some(angle)) = (outcome.state, outcome.reading.ejection_angle) {
+        search.deflections.push(Deflection {
+            weber,
+            angle,
+            contact_position: outcome.reading.contact_position,
+        });
+    }
+    Ok(outcome)
+}
+
+/// Readings over which a stream must not change to be called at rest: 12 h/U.
+const CALM: usize = 24;
+
+/// Lets a stream run until it attaches, chokes or rests.
+fn rest<T: Real>(
+    problem: &Problem,
+    walk: &mut Walk<'_, T>,
+    settle: f64,
+    patience: f64,
+    settled: f64,
+) -> Outcome {
+    let weber = walk.stream.weber();
+    let mut past = [None; CALM];
+    let mut time = 0.0;
+    let mut taken = 0;
+    let (state, reading) = loop {
+        let reading = match walk.pace() {
+            Ok(reading) => reading,
+            Err((reason, reading)) => break (State::NotConverged(reason), reading),
+        };
+        time += READING_INTERVAL;
+        match judge(problem, &reading, settled) {
+            // The start itself may pile up liquid for a while.
+            Some(State::Choked) if time <= settle => {}
+            Some(state) => break (state, reading),
+            None => {}
+        }
+        let slot = &mut past[taken % CALM];
+        if let Some(then) = slot.replace(reading) {
+            if time > settle && calm(&then, &reading) {
+                break (State::Separated, reading);
+            }
+        }
+        taken += 1;
+        if time >= patience {
+            // Streams that shed waves never rest; they leave all the same if the line has not advanced.
+            let advanced =
+                past.iter().flatten().any(|then| then.contact_position < reading.contact_position - 0.12);
+            let state = if advanced { State::NotConverged(Reason::StillMoving) } else { State::Separated };
+            break (state, reading);
+        }
+    };
+    Outcome { state, weber, reading, steps: walk.stream.lattice().steps() }
+}
+
+/// Whether nothing has changed between two readings: 0.3°, and a tenth of h in the contact line.
+fn calm(then: &Reading, now: &Reading) -> bool {
+    let turned = match (then.ejection_angle, now.ejection_angle) {
+        (Some(a), Some(b)) => (a - b).abs() < 0.3 * PI / 180.0,
+        _ => false,
+    };
+    turned && (then.contact_position - now.contact_position).abs() < 0.1
+}
+
+/// How a quick ramp ended, and at which Weber number.
+enum Descent {
+    Attached(f64),
+    Choked(f64),
+    Lowest,
+    Failed(f64, Reason),
+}
+
+/// One quick way down from a fresh separated stream at `start`.
 fn descend<T: Real>(
     problem: &Problem,
     plan: &Plan,
     start: f64,
-    rate: f64,
     watch: Watch<'_>,
-    ramp: &mut Ramp,
-) -> Result<Onset, SolverFault> {
-    let interval = (READING_INTERVAL * plan.grid.steps_per_turnover()).round() as u32;
+    search: &mut Search,
+) -> Result<Descent, SolverFault> {
+    let total = plan.work(problem) / plan.cells_of(problem);
     let stream = Stream::<T>::separated(problem, &plan.grid, start, plan.threads)?;
-    let (columns, rows) = plan.grid.shape(problem);
-    let total = plan.work(problem) / (columns * rows) as f64;
-    let mut walk = Walk { stream, watch, interval, total, before: ramp.steps };
+    let mut walk = Walk { stream, watch, interval: interval(plan), total, before: search.steps };
     let settle = settling_time(problem, &plan.grid);
-    ramp.deflections.clear();
     let mut time = 0.0;
     let mut settled: Option<f64> = None;
-    let mut signs = None;
-    let mut station = f64::INFINITY;
-    let onset = loop {
+    let ended = loop {
         time += READING_INTERVAL;
         if time > settle {
-            walk.stream.set_weber(walk.stream.weber() * libm::exp(-rate * READING_INTERVAL));
+            walk.stream.set_weber(walk.stream.weber() * libm::exp(-QUICK * READING_INTERVAL));
         }
         let weber = walk.stream.weber();
         let reading = match walk.pace() {
             Ok(reading) => reading,
-            Err((reason, _)) => break Onset::NotConverged { weber, reason },
+            Err((reason, _)) => break Descent::Failed(weber, reason),
         };
-        let beyond = reading.contact_position - problem.radius_ratio * problem.turn;
-        if beyond > SIGNS_BEYOND_ARC {
-            signs = signs.or(Some(weber));
-        } else {
-            signs = None;
-        }
         if time > settle && settled.is_none() {
             settled = Some(reading.thickness_before);
-            ramp.settled = Some(reading);
+            search.settled = Some(reading);
         }
         match judge(problem, &reading, settled.unwrap_or(f64::INFINITY)) {
-            Some(State::Attached) if time <= settle => break Onset::Above { weber },
-            Some(State::Attached) => {
-                break Onset::Found { critical: weber, first_signs: signs.unwrap_or(weber) };
-            }
-            Some(State::Choked) => break Onset::Below { weber, choked: true },
-            Some(State::NotConverged(reason)) => break Onset::NotConverged { weber, reason },
+            Some(State::Attached) => break Descent::Attached(weber),
+            Some(State::Choked) => break Descent::Choked(weber),
+            Some(State::NotConverged(reason)) => break Descent::Failed(weber, reason),
             Some(State::Separated) | None => {}
         }
         if weber < LOWEST_WEBER {
-            break Onset::Below { weber, choked: false };
-        }
-        if time > settle && weber < 0.83 * station {
-            station = weber;
-            if let Some(angle) = reading.ejection_angle {
-                ramp.deflections.push(Deflection { weber, angle, contact_position: reading.contact_position });
-            }
+            break Descent::Lowest;
         }
     };
-    ramp.steps += walk.stream.lattice().steps();
-    Ok(onset)
+    search.steps += walk.stream.lattice().steps();
+    Ok(ended)
+}
+
+fn interval(plan: &Plan) -> u32 {
+    (READING_INTERVAL * plan.grid.steps_per_turnover()).round() as u32
 }
 
 /// Critical Weber number on the plan's grid and on one a third coarser, whose difference estimates the error.

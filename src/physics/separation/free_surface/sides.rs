@@ -1,9 +1,7 @@
 //! The outermost cells of the lattice: fed, open, periodic or imposed.
 
 use super::band::Plan;
-use super::layout::{
-    FLUX_X, FLUX_Y, MOVE_X, MOVE_Y, PHASE, REST, STRESS_XX, STRESS_XY, STRESS_YY,
-};
+use super::layout::{FLUX_X, FLUX_Y, MOVE_X, MOVE_Y, PHASE, REST, STRESS_XX, STRESS_XY, STRESS_YY};
 use super::real::Real;
 use super::setup::{Ends, Feed, Seed, Setup};
 use super::wall::Cell;
@@ -65,7 +63,8 @@ impl<T: Real> Sides<T> {
             phase[0] = phase[nx - 2];
             phase[nx - 1] = phase[1];
         } else {
-            phase[0] = self.fed[row].map_or(if self.is_fed() { T::default() } else { phase[1] }, |fed| fed.phase);
+            phase[0] =
+                self.fed[row].map_or(if self.is_fed() { T::default() } else { phase[1] }, |fed| fed.phase);
             phase[nx - 1] = phase[nx - 2];
         }
         for (column, state) in &self.imposed[self.imposed_rows[row]..self.imposed_rows[row + 1]] {
@@ -133,7 +132,9 @@ pub(super) fn settle_columns<T: Real>(out: &mut [T], plan: &Plan<T>, row: usize,
         if plan.cells[row * nx] != Cell::Wall {
             let inner = state(out, nx, 1);
             let left = match sides.fed[row] {
-                Some(fed) => State { pressure: inner.pressure, velocity: [fed.speed, zero], phase: fed.phase },
+                Some(fed) => {
+                    State { pressure: inner.pressure, velocity: [fed.speed, zero], phase: fed.phase }
+                }
                 None if sides.is_fed() => State { pressure: zero, velocity: inner.velocity, phase: zero },
                 None => State { pressure: zero, ..inner },
             };

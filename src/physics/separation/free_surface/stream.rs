@@ -46,7 +46,12 @@ impl<T: Real> Stream<T> {
     ///
     /// # Errors
     /// [`LatticeFault`] if the grid's shape does not fit.
-    pub fn separated(problem: &Problem, grid: &Grid, weber: f64, threads: usize) -> Result<Self, LatticeFault> {
+    pub fn separated(
+        problem: &Problem,
+        grid: &Grid,
+        weber: f64,
+        threads: usize,
+    ) -> Result<Self, LatticeFault> {
         let h = f64::from(grid.cells);
         let radius = problem.radius_ratio * h;
         let (columns, rows) = grid.shape(problem);
@@ -60,7 +65,7 @@ impl<T: Real> Stream<T> {
         let fluids = Fluids {
             density_ratio: grid.density_ratio,
             liquid_viscosity,
-            gas_viscosity: (2.0 * liquid_viscosity).max(0.02),
+            gas_viscosity: (2.0 * liquid_viscosity).max(grid.least_gas_viscosity),
             surface_tension: grid.speed * grid.speed * h / weber,
             interface: grid.interface,
             mobility: grid.mobility,
@@ -90,10 +95,9 @@ impl<T: Real> Stream<T> {
                 },
                 imposed: &|i, j| match problem.approach {
                     Approach::Film => None,
-                    Approach::Flow => slot.at(i, j).then_some(Seed {
-                        phase: 1.0,
-                        velocity: [0.0, grid.speed * h / slot.cells()],
-                    }),
+                    Approach::Flow => slot
+                        .at(i, j)
+                        .then_some(Seed { phase: 1.0, velocity: [0.0, grid.speed * h / slot.cells()] }),
                 },
                 start: &start,
                 ends: match problem.approach {
@@ -106,15 +110,8 @@ impl<T: Real> Stream<T> {
             },
             threads,
         )?;
-        let mut stream = Self {
-            problem: *problem,
-            grid: *grid,
-            lip,
-            lattice,
-            weber,
-            ring: vec![],
-            beside_wall: vec![],
-        };
+        let mut stream =
+            Self { problem: *problem, grid: *grid, lip, lattice, weber, ring: vec![], beside_wall: vec![] };
         stream.survey();
         Ok(stream)
     }
@@ -148,7 +145,8 @@ impl<T: Real> Stream<T> {
     /// Sets the Weber number by the surface tension; Re and Fr stay.
     pub fn set_weber(&mut self, weber: f64) {
         self.weber = weber;
-        self.lattice.set_surface_tension(self.grid.speed * self.grid.speed * f64::from(self.grid.cells) / weber);
+        self.lattice
+            .set_surface_tension(self.grid.speed * self.grid.speed * f64::from(self.grid.cells) / weber);
     }
 
     /// Advances by `steps` steps.
@@ -180,10 +178,10 @@ impl<T: Real> Stream<T> {
         &self.grid
     }
 
-    /// Whether the fields are finite and slower than the lattice carries (a third of a cell per step).
+    /// Whether the fields are finite and slower than a cell per step.
     #[must_use]
     pub fn is_sound(&self) -> bool {
-        self.lattice.is_sound(0.35)
+        self.lattice.is_sound(1.0)
     }
 
     fn column(&self, x: f64) -> [f64; 3] {
@@ -226,7 +224,9 @@ impl<T: Real> Stream<T> {
         let [before, ..] = self.column(self.lip.arc_start - 2.0 * h);
         Reading {
             contact_position: farthest / h,
-            ejection_angle: wet.then(|| libm::atan2(-my, mx)).map(|angle| if angle < -PI / 2.0 { angle + 2.0 * PI } else { angle }),
+            ejection_angle: wet
+                .then(|| libm::atan2(-my, mx))
+                .map(|angle| if angle < -PI / 2.0 { angle + 2.0 * PI } else { angle }),
             thickness_at_arc: thickness / h,
             thickness_before: before / h,
             flow: flow / (u * h),

@@ -6,8 +6,9 @@
 //! φ/(1 − φ) falls by the factor e^(4 cos θ L/ξ) over a length L. So a cell a distance L behind a fluid point where the phase is φ_f takes
 //! φ = φ_f e/(1 + φ_f (e − 1)), e = exp(4 L cos θ/ξ): exact for a straight interface, and bounded in 0..1 whatever the angle.
 //!
-//! Hysteresis: the factor that the fluid itself shows between two points along the normal is kept while it lies between those of the advancing and the
-//! receding angle (the line then feels no pull), and held to the nearer of the two otherwise. Own construction.
+//! Hysteresis: the line is held by a spring that yields (elastic, ideally plastic: Prandtl's friction element). The logarithm of the factor moves against the
+//! interface as that moves along the wall, and stays between the values of the advancing and the receding angle; over the whole span the line shifts by
+//! about a quarter of the interface's width. Own construction.
 
 use super::contact::ContactAngle;
 use super::layout::{CX, CY, HALO};
@@ -58,29 +59,69 @@ pub(super) struct Ghost<T> {
     far: Stencil<T>,
     advancing: T,
     receding: T,
+    /// Twice ln(receding/advancing): how fast the factor moves with the logit of the phase.
+    stiffness: T,
+}
+
+/// Where the spring of a ghost stands.
+#[derive(Debug, Clone, Copy, Default)]
+pub(super) struct Pin<T> {
+    factor: T,
+    phase: T,
+    set: bool,
 }
 
 impl<T: Real> Ghost<T> {
     /// Writes the phase of this cell into `plane`, whose first cell has index `shift`.
     #[inline]
-    pub(super) fn write(&self, plane: &mut [T], shift: usize) {
+    pub(super) fn write(&self, plane: &mut [T], shift: usize, pin: &mut Pin<T>) {
         let one = T::of(1.0);
         let phase = self.near.read(plane, shift);
         let factor = if self.advancing < self.receding {
-            let far = self.far.read(plane, shift);
-            // near/(1 − near) over far/(1 − far), compared without dividing.
-            let (up, down) = (phase * (one - far), far * (one - phase));
-            if up < self.advancing * down {
-                self.advancing
-            } else if up > self.receding * down || down <= T::default() {
-                self.receding
-            } else {
-                up / down
-            }
+            let factor = if pin.set { self.pulled(phase, pin) } else { self.found(phase, plane, shift) };
+            *pin = Pin { factor, phase, set: true };
+            factor
         } else {
             self.advancing
         };
         plane[self.cell as usize - shift] = phase * factor / (one + phase * (factor - one));
+    }
+
+    /// The factor that the fluid itself shows at the start.
+    fn found(&self, phase: T, plane: &[T], shift: usize) -> T {
+        let one = T::of(1.0);
+        let far = self.far.read(plane, shift);
+        // near/(1 − near) over far/(1 − far), compared without dividing.
+        let (up, down) = (phase * (one - far), far * (one - phase));
+        if down <= T::default() || up > self.receding * down {
+            self.receding
+        } else if up < self.advancing * down {
+            self.advancing
+        } else {
+            up / down
+        }
+    }
+
+    /// The factor after the phase has moved: falls as the liquid advances.
+    fn pulled(&self, phase: T, pin: &Pin<T>) -> T {
+        let (one, half, floor) = (T::of(1.0), T::of(0.5), T::of(1e-3));
+        let middle = half * (phase + pin.phase);
+        let moved = self.stiffness * (phase - pin.phase) / (middle * (one - middle) + floor);
+        let change = if moved > half {
+            half
+        } else if moved < -half {
+            -half
+        } else {
+            moved
+        };
+        let factor = pin.factor * (one - change);
+        if factor < self.advancing {
+            self.advancing
+        } else if factor > self.receding {
+            self.receding
+        } else {
+            factor
+        }
     }
 }
 
@@ -108,7 +149,11 @@ impl Ground<'_> {
     fn at(&self, i: i64, j: i64) -> Option<Cell> {
         let (nx, ny) = (self.columns as i64, self.rows as i64);
         let i = if self.periodic { (i - 1).rem_euclid(nx - 2) + 1 } else { i };
-        (0..nx).contains(&i).then_some(()).filter(|()| (0..ny).contains(&j)).map(|()| self.cells[(j * nx + i) as usize])
+        (0..nx)
+            .contains(&i)
+            .then_some(())
+            .filter(|()| (0..ny).contains(&j))
+            .map(|()| self.cells[(j * nx + i) as usize])
     }
 
     /// Bilinear stencil at (x, y) over cells that are not wall; `None` if less than half of the weight is.
@@ -120,12 +165,8 @@ impl Ground<'_> {
         let (a, b) = (x - i, y - j);
         let mut cells = [0; 4];
         let mut weights = [0.0; 4];
-        let corners = [
-            (0, 0, (1.0 - a) * (1.0 - b)),
-            (1, 0, a * (1.0 - b)),
-            (0, 1, (1.0 - a) * b),
-            (1, 1, a * b),
-        ];
+        let corners =
+            [(0, 0, (1.0 - a) * (1.0 - b)), (1, 0, a * (1.0 - b)), (0, 1, (1.0 - a) * b), (1, 1, a * b)];
         for (k, (di, dj, weight)) in corners.into_iter().enumerate() {
             let (ci, cj) = (i as i64 + di, j as i64 + dj);
             cells[k] = (((cj + HALO as i64) * self.columns as i64) + ci) as u32;
@@ -192,6 +233,10 @@ impl<T: Real> Walls<T> {
                     far,
                     advancing: factor(contact.advancing()),
                     receding: factor(contact.receding()),
+                    stiffness: T::of(
+                        8.0 * length * (libm::cos(contact.receding()) - libm::cos(contact.advancing()))
+                            / interface,
+                    ),
                 });
                 return;
             }
