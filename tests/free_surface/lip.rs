@@ -74,17 +74,22 @@ fn end_depth_of_a_free_overfall() {
     assert!((depth - 0.715).abs() < 0.05, "{depth}");
 }
 
+/// β We_c at an ideally sharp right-angled edge, θ = 60°, where the balance β We_c = 1 + E/(1 − cos α) gives 2.5.
+fn sharp_threshold(reynolds: f64) -> f64 {
+    let problem = Problem { radius_ratio: 0.0, contact: degrees(60.0), reynolds, ..right_angle() };
+    let plan = Plan { start: 8.0, tolerance: 0.05, ..Plan::with_cells(&problem, 8, 1).unwrap() };
+    let search = critical_weber::<f32>(&problem, &plan, watch()).unwrap();
+    let Onset::Found { critical, .. } = search.onset else { panic!("{search:?}") };
+    critical * search.settled.unwrap().momentum
+}
+
 #[test]
 fn sharp_edge_balance() {
-    let problem = Problem { radius_ratio: 0.0, contact: degrees(60.0), reynolds: 100.0, ..right_angle() };
-    let plan = Plan { start: 8.0, ..Plan::with_cells(&problem, 8, 1).unwrap() };
-    let search = critical_weber::<f32>(&problem, &plan, watch()).unwrap();
-    println!("sharp edge: {:?}, momentum factor {:?}", search.onset, search.settled.map(|s| s.momentum));
-    let Onset::Found { critical, .. } = search.onset else { panic!("{search:?}") };
-    let balance = 1.0 + 1.5;
-    let momentum = search.settled.unwrap().momentum;
-    println!("sharp edge: beta We = {:.3}, balance {balance}", critical * momentum);
-    assert!((critical * momentum / balance - 1.0).abs() < 0.25);
+    // The balance neglects shear on the outer wall, which helps clinging: it is approached from above as Re grows.
+    // On 12 and on 24 cells the threshold at Re = 100 was the same, 2.86.
+    let [slow, fast] = [100.0, 400.0].map(sharp_threshold);
+    println!("sharp edge: beta We = {slow:.2} at Re 100, {fast:.2} at Re 400; balance 2.5 without shear");
+    assert!(fast < slow && fast > 2.5 && fast < 1.25 * 2.5, "{slow} {fast}");
 }
 
 #[test]

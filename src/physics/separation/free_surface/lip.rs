@@ -17,14 +17,14 @@ pub struct Lip {
 
 impl Lip {
     /// Point relative to the centre of the arc.
-    fn from_centre(&self, x: f64, y: f64) -> (f64, f64) {
+    fn off_centre(&self, x: f64, y: f64) -> (f64, f64) {
         (x - self.arc_start, y - (self.floor - self.radius))
     }
 
     /// Signed distance from the surface, positive outside the body.
     #[must_use]
     pub fn distance(&self, x: f64, y: f64) -> f64 {
-        let (dx, dy) = self.from_centre(x, y);
+        let (dx, dy) = self.off_centre(x, y);
         let around = libm::atan2(dx, dy);
         if (0.0..=self.turn).contains(&around) {
             return libm::hypot(dx, dy) - self.radius;
@@ -36,7 +36,7 @@ impl Lip {
     /// Length along the surface from the start of the arc, positive downstream.
     #[must_use]
     pub fn along(&self, x: f64, y: f64) -> f64 {
-        let (dx, dy) = self.from_centre(x, y);
+        let (dx, dy) = self.off_centre(x, y);
         let around = libm::atan2(dx, dy);
         let (sine, cosine) = libm::sincos(self.turn);
         if (0.0..=self.turn).contains(&around) {
@@ -61,7 +61,7 @@ impl Lip {
     /// Distance of a point from the centre of the arc.
     #[must_use]
     pub fn reach(&self, x: f64, y: f64) -> f64 {
-        let (dx, dy) = self.from_centre(x, y);
+        let (dx, dy) = self.off_centre(x, y);
         libm::hypot(dx, dy)
     }
 }

@@ -335,10 +335,11 @@ fn rest<T: Real>(
             None => {}
         }
         let slot = &mut past[taken % CALM];
-        if let Some(then) = slot.replace(reading) {
-            if time > settle && calm(&then, &reading) {
-                break (State::Separated, reading);
-            }
+        if let Some(then) = slot.replace(reading)
+            && time > settle
+            && calm(&then, &reading)
+        {
+            break (State::Separated, reading);
         }
         taken += 1;
         if time >= patience {
