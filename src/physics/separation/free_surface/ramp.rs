@@ -64,7 +64,7 @@ impl Plan {
     pub fn work(&self, problem: &Problem) -> f64 {
         let settle = settling_time(problem, &self.grid);
         let quick = libm::log(self.start / LOWEST_WEBER) / QUICK;
-        let held = 6.0 * (settle + 25.0);
+        let held = 6.0 * (settle + 40.0);
         (settle + quick + held) * self.grid.steps_per_turnover() * self.cells_of(problem)
     }
 }
@@ -183,7 +183,7 @@ fn afford(needed: f64, plan: &Plan) -> Result<(), SolverFault> {
 ///
 /// First a quick ramp down from a separated stream, which tells roughly where: near the threshold the stream gives way so slowly that a ramp passes it
 /// before anything shows (the lag in ln We goes as the rate to the power ⅔, as at any fold; measured 6 × rate^⅔, rate per h/U). Then streams
-/// held at fixed Weber numbers, each from a fresh separated start, until they attach or rest; their Weber numbers close in on the threshold.
+/// held at fixed Weber numbers, each lowered from a settled separated stream, until they attach or rest; their Weber numbers close in on the threshold.
 ///
 /// # Errors
 /// [`SolverFault`] if the problem, the grid or the budget do not allow it.
@@ -227,16 +227,16 @@ pub fn critical_weber<T: Real>(
             return Ok(search);
         }
     };
-    search.onset = close_in::<T>(problem, plan, first, watch, &mut search)?;
+    search.onset = close_in::<T>(problem, plan, (start, first), watch, &mut search)?;
     search.deflections.sort_by(|a, b| a.weber.total_cmp(&b.weber));
     Ok(search)
 }
 
-/// Closes in on the threshold with streams held at fixed Weber numbers, the first at `first`.
+/// Closes in on the threshold with streams lowered from `start` and held, the first at `first`.
 fn close_in<T: Real>(
     problem: &Problem,
     plan: &Plan,
-    first: f64,
+    (start, first): (f64, f64),
     watch: Watch<'_>,
     search: &mut Search,
 ) -> Result<Onset, SolverFault> {
@@ -245,7 +245,7 @@ fn close_in<T: Real>(
     let mut undecided = 0;
     let mut weber = first;
     loop {
-        let held = hold::<T>(problem, plan, weber, watch, search)?;
+        let held = hold::<T>(problem, plan, (start, weber), watch, search)?;
         match held.state {
             State::Separated => leaves = Some(weber),
             State::Attached | State::Choked => {
@@ -282,20 +282,42 @@ fn close_in<T: Real>(
     }
 }
 
-/// A stream held at one Weber number until it attaches, chokes or rests.
+/// Lets a stream settle, then lowers its Weber number to `weber` in twelve h/U: started low at once, it would wet the outer wall before it is formed.
+fn lower<T: Real>(walk: &mut Walk<'_, T>, settle: f64, weber: f64) -> Result<(), (Reason, Reading)> {
+    let mut time = 0.0;
+    while time < settle {
+        walk.pace()?;
+        time += READING_INTERVAL;
+    }
+    let stages = 24;
+    let factor = libm::exp(libm::log(weber / walk.stream.weber()) / f64::from(stages));
+    for _ in 0..stages {
+        walk.stream.set_weber(walk.stream.weber() * factor);
+        walk.pace()?;
+    }
+    walk.stream.set_weber(weber);
+    Ok(())
+}
+
+/// A stream lowered from `start` to one Weber number and held there until it attaches, chokes or rests.
 fn hold<T: Real>(
     problem: &Problem,
     plan: &Plan,
-    weber: f64,
+    (start, weber): (f64, f64),
     watch: Watch<'_>,
     search: &mut Search,
 ) -> Result<Outcome, SolverFault> {
     let settled = search.settled.map_or(1.1, |reading| reading.thickness_before);
     let total = plan.work(problem) / plan.cells_of(problem);
-    let stream = Stream::<T>::separated(problem, &plan.grid, weber, plan.threads)?;
+    let stream = Stream::<T>::separated(problem, &plan.grid, start.max(weber), plan.threads)?;
     let mut walk = Walk { stream, watch, interval: interval(plan), total, before: search.steps };
-    let outcome =
-        rest(problem, &mut walk, settling_time(problem, &plan.grid), plan.patience(problem), settled);
+    if let Err((reason, reading)) = lower(&mut walk, settling_time(problem, &plan.grid), weber) {
+        let steps = walk.stream.lattice().steps();
+        search.steps += steps;
+        return Ok(Outcome { state: State::NotConverged(reason), weber, reading, steps });
+    }
+    let forget = CALM as f64 * READING_INTERVAL;
+    let outcome = rest(problem, &mut walk, forget, plan.patience(problem), settled);
     search.steps += outcome.steps;
     if let (State::Separated, Some(angle)) = (outcome.state, outcome.reading.ejection_angle) {
         search.deflections.push(Deflection {
