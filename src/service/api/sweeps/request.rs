@@ -244,9 +244,8 @@ impl SweepRequest {
             let detail = format!("{} is varied by an earlier axis already", quoted(&axis.pointer));
             faults.push(Fault::new(at("pointer"), "repeated", detail));
         }
-        let field = spec.and_then(|spec| {
-            field_at(&self.base, spec, &axis.pointer, at("pointer")).map_err(|fault| faults.push(fault)).ok()
-        });
+        let field =
+            field_at(&self.base, spec, &axis.pointer, at("pointer")).map_err(|fault| faults.push(fault)).ok();
         let values = axis.values(&at, faults);
         let field = field?;
         let quantity = field.quantity();
