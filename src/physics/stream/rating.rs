@@ -35,6 +35,9 @@ pub fn rated_flow(section: &Section, run: &Run, kinematic_viscosity: f64, head: 
         return Some(0.0);
     }
     let inertial = critical_flow(section, head)?;
+    if run.length == 0.0 {
+        return Some(inertial);
+    }
     let viscous = viscous_flow(section, run, kinematic_viscosity, head);
     let ratio = inertial / viscous;
     if ratio < 1e-9 {
@@ -62,7 +65,8 @@ fn viscous_flow(section: &Section, run: &Run, kinematic_viscosity: f64, head: f6
         Section::Tube { bore } if head > bore => bore / (exponent + 1.0) + (head - bore),
         _ => head / (exponent + 1.0),
     };
-    let own = cosine * reach / run.length;
+    // Past the vertical the film's own weight no longer spreads it.
+    let own = cosine.max(0.0) * reach / run.length;
     let share = if sine >= 0.0 { 1.0 } else { libm::pow(exponent * libm::sin(PI / exponent) / PI, exponent) };
     let drive = libm::pow(libm::pow(own, DRIVE) + libm::pow(share * sine.abs(), DRIVE), 1.0 / DRIVE);
     GRAVITY * conveyance * drive / (section.friction_constant() * kinematic_viscosity)
