@@ -21,8 +21,6 @@ pub(super) struct Attitude {
     pub volume: f64,
     /// Level above the lip, m.
     pub head: f64,
-    /// Level above the highest point of the floor, m.
-    pub over_sill: f64,
     /// What flows over a wetted lip, m³/s.
     pub flow: f64,
     /// Slope of the floor, rad.
@@ -45,16 +43,15 @@ impl Setup {
         let liquid = &self.dry.case.liquid;
         let flow = rated_flow(&self.dry.case.lip.section, &run, liquid.kinematic_viscosity(), over_sill)?;
         let known = head.is_finite() && flow.is_finite();
-        known.then_some(Attitude { time, tilt, volume, head, over_sill, flow, slope: run.slope, cut })
+        known.then_some(Attitude { time, tilt, volume, head, flow, slope: run.slope, cut })
     }
 
-    /// How far the level is above where liquid begins to run (negative: below), m on a dry lip, m³/s on a wetted one.
+    /// How far the vessel is beyond where liquid begins to run (negative: not yet): the flow over the least one, and on a dry lip the head over what surface tension
+    /// holds back.
     pub fn start_excess(&self, at: &Attitude, wetted: bool) -> f64 {
-        if wetted {
-            return at.flow - LEAST_FLOW;
-        }
+        let runs = at.flow / LEAST_FLOW - 1.0;
         let case = &self.dry.case;
         let held = start_head(&case.liquid, case.advancing, case.lip.edge.turn);
-        at.over_sill.min(at.head - held)
+        if wetted || held <= 0.0 { runs } else { runs.min(at.head / held - 1.0) }
     }
 }

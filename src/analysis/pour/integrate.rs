@@ -16,8 +16,8 @@ use crate::{
     },
 };
 
-/// Largest step, s, of a pour of up to 20 s; a 200th of longer ones.
-const LARGEST_STEP: f64 = 0.1;
+/// Largest step, s, of a pour of up to 25 s; a 200th of longer ones.
+const LARGEST_STEP: f64 = 0.125;
 /// Difference between volume state and integrated flow that a step may leave, as a share of the fill.
 const STEP_TOLERANCE: f64 = 3e-9;
 /// Share of the fill below which the vessel counts as empty.
