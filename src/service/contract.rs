@@ -12,7 +12,12 @@ use super::problem::{PROBLEM_JSON, ProblemDocument, ProblemKind};
 #[openapi(
     info(
         title = "dribble-risk",
-        description = "Tells people who make things that pour whether a lip will dribble, how surely, and what to change.\n\nEvery physical number carries its unit in its name. Every failure is a problem document (RFC 9457); `errors` lists all faults found, each with a JSON Pointer to the field."
+        description = include_str!("contract.md")
+    ),
+    tags(
+        (name = "lip", description = "Does a lip dribble?"),
+        (name = "catalogue", description = "Liquids, materials, and how they wet each other"),
+        (name = "operation", description = "For those who run the service")
     ),
     components(schemas(ProblemDocument))
 )]

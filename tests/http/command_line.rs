@@ -95,6 +95,34 @@ fn bad_settings_are_named() {
 }
 
 #[test]
+fn evaluate_decides_without_a_server() {
+    let scratch = Scratch::new("evaluate");
+    let file = scratch.file("request.json");
+    let request = crate::evaluations::request().to_string();
+    write_file(&file, &request);
+    let from_file = program().arg("evaluate").arg(&file).output().unwrap();
+    assert_eq!(from_file.status.code(), Some(0), "{}", String::from_utf8_lossy(&from_file.stderr));
+    let answer: serde_json::Value = serde_json::from_slice(&from_file.stdout).unwrap();
+    assert!(answer["safety_factor"]["value"].as_f64().unwrap() > 0.0);
+
+    let mut child = program()
+        .args(["evaluate", "-"])
+        .stdin(std::process::Stdio::piped())
+        .stdout(std::process::Stdio::piped())
+        .spawn()
+        .unwrap();
+    child.stdin.take().unwrap().write_all(request.as_bytes()).unwrap();
+    assert_eq!(child.wait_with_output().unwrap().stdout, from_file.stdout, "same request, same bytes");
+
+    write_file(&file, "{\"lip\": 3}");
+    let refused = program().arg("evaluate").arg(&file).output().unwrap();
+    assert_eq!(refused.status.code(), Some(1));
+    assert!(String::from_utf8_lossy(&refused.stderr).contains("/pour"));
+    let nowhere = program().args(["evaluate", "no-such-file"]).output().unwrap();
+    assert_eq!(nowhere.status.code(), Some(1));
+}
+
+#[test]
 fn openapi_prints_the_document() {
     let output = program().arg("openapi").output().unwrap();
     assert!(output.status.success());

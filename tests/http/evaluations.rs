@@ -343,7 +343,7 @@ async fn all_faults_come_together() {
     let text = r#"{
         "lip": {"section": {"sheet": {"width_mm": -3}}, "edge": {"rounded": {"radius_mm": 1e999}}, "run": {"slope_deg": "steep"}, "wall": 2},
         "surface": {"catalogue": {"id": "porcelain", "state": "in_use"}},
-        "liquid": {"catalogue": {"id": "sucrose-solution", "temperature_c": 20, "mass_fraction": 0.9}},
+        "liquid": {"catalogue": {"id": "milk", "temperature_c": -9, "fat_percent": 3.5}},
         "pour": {},
         "uncertainty": {"/no/such": 1},
         "colour": "blue"
@@ -355,6 +355,7 @@ async fn all_faults_come_together() {
         ("/lip/run/slope_deg", "wrong_type"),
         ("/lip/section/sheet/width_mm", "out_of_range"),
         ("/lip/wall", "unknown_field"),
+        ("/liquid/catalogue/temperature_c", "freezes"),
         ("/pour/flow_ml_s", "missing"),
         ("/surface/catalogue/id", "unknown_id"),
         ("/uncertainty/~1no~1such", "unknown_pointer"),
@@ -363,6 +364,32 @@ async fn all_faults_come_together() {
     for (pointer, code) in expected {
         assert!(found.contains(&(pointer.to_owned(), code.to_owned())), "{pointer} {code} in {found:#?}");
     }
+}
+
+#[tokio::test]
+async fn faults_of_form_and_of_meaning_come_together() {
+    let service = service(&state(|_| {}));
+    let mut asked = request();
+    asked["surface"] = json!({"catalogue": {"id": "porcelain", "state": "in_use"}});
+    asked["liquid"] = json!({"catalogue": {"id": "milk", "temperature_c": 130, "fat_percent": 3.5}});
+    asked["coefficients"] = "set-7".into();
+    asked["lip"]["run"]["slope_deg"] = json!(-30);
+    asked["lip"]["edge"]["rounded"]["turn_deg"] = json!(25);
+    asked["uncertainty"] = json!({"/surface/measured/advancing_deg": 4, "/pour/flow_ml_s": -1});
+    let found = faults(&service, &asked.to_string()).await;
+    for pointer in [
+        "/surface/catalogue/id",
+        "/liquid/catalogue/temperature_c",
+        "/coefficients",
+        "/lip/run/slope_deg",
+        "/uncertainty/~1pour~1flow_ml_s",
+    ] {
+        assert!(found.iter().any(|(at, _)| at == pointer), "{pointer} in {found:?}");
+    }
+    assert!(
+        !found.iter().any(|(at, _)| at.contains("advancing")),
+        "the surface is not known, so nothing is said of it: {found:?}"
+    );
 }
 
 #[tokio::test]

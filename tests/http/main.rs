@@ -12,6 +12,7 @@ mod evaluations;
 mod lookups;
 mod problems;
 mod properties;
+mod readme;
 mod server;
 mod shell;
 mod sockets;

@@ -11,7 +11,7 @@ use crate::{
         fault::Fault,
         field::Field,
         remedy::{LEVERS, Limit},
-        spec::{OuterFace, SectionSpec, Spec, Uncertainties},
+        spec::{LiquidSpec, OuterFace, SectionSpec, Spec, SurfaceSpec, Uncertainties},
     },
     physics::separation::closed_form::{CoefficientSet, DEFAULT_SET, SETS},
     service::{
@@ -122,6 +122,14 @@ pub struct LimitRequest {
     pub minimum: Option<f64>,
 }
 
+/// Stands in for a surface that is not known while the rest of a request is looked at.
+const STAND_IN_SURFACE: SurfaceSpec =
+    SurfaceSpec::Measured { contact_angle_deg: Some(60.0), advancing_deg: None, receding_deg: None };
+
+/// Stands in for a liquid that is not known while the rest of a request is looked at.
+const STAND_IN_LIQUID: LiquidSpec =
+    LiquidSpec::Measured { density_kg_m3: 1000.0, viscosity_mpa_s: 1.0, surface_tension_mn_m: 72.0 };
+
 fn default_coefficients() -> String {
     DEFAULT_SET.id.to_owned()
 }
@@ -176,17 +184,15 @@ impl EvaluationRequest {
         let EdgeRequest::Rounded(edge) = self.lip.edge;
         let limits = self.limits(&mut faults);
         let uncertainties = self.uncertainties(&mut faults);
-        let (Some(surface), Some(liquid), Some(coefficients)) = (surface, liquid, coefficients) else {
-            return Err(faults);
-        };
+        let known = (surface.is_some(), liquid.is_some());
         let mut spec = Spec {
             section: SectionSpec::from(self.lip.section),
             radius_mm: edge.radius_mm.get(),
             turn_deg: edge.turn_deg.get(),
             slope_deg: self.lip.run.slope_deg.get(),
             length_mm: self.lip.run.length_mm.get(),
-            surface,
-            liquid,
+            surface: surface.unwrap_or(STAND_IN_SURFACE),
+            liquid: liquid.unwrap_or(STAND_IN_LIQUID),
             flow_ml_s: self.pour.flow_ml_s.get(),
             outer_face: match self.outer_face {
                 OuterFaceRequest::Dry => OuterFace::Dry,
@@ -194,12 +200,17 @@ impl EvaluationRequest {
             },
             confidence: self.confidence.get(),
             uncertainty: Uncertainties::default(),
-            coefficients,
+            coefficients: coefficients.unwrap_or(DEFAULT_SET),
         };
         for (field, value) in uncertainties {
+            let part_known = match field.pointer().split('/').nth(1) {
+                Some("surface") => known.0,
+                Some("liquid") => known.1,
+                _ => true,
+            };
             if field.get(&spec).is_some() {
                 spec.uncertainty.set(field, value);
-            } else {
+            } else if part_known {
                 let pointer = field.pointer();
                 let detail = format!("this request gives no {pointer}");
                 let known = Field::all().filter(|field| field.get(&spec).is_some()).map(Field::pointer);
@@ -207,7 +218,19 @@ impl EvaluationRequest {
                 faults.push(fault.choices(nearest(pointer, known)));
             }
         }
-        if faults.is_empty() { Ok((spec, limits)) } else { Err(faults) }
+        if faults.is_empty() {
+            return Ok((spec, limits));
+        }
+        // What else is wrong, as far as it does not hang on a part that stands in for an unknown one.
+        let stands_in = |fault: &Fault| {
+            (!known.0 && fault.pointer.starts_with("/surface"))
+                || (!known.1 && fault.pointer.starts_with("/liquid"))
+        };
+        let elsewhere = spec.resolve().err().unwrap_or_default();
+        let together = known.0 && known.1;
+        let counts = |fault: &Fault| !stands_in(fault) && (together || fault.code != "not_applicable");
+        faults.extend(elsewhere.into_iter().filter(counts));
+        Err(faults)
     }
 
     /// The uncertainties given, by field.
