@@ -10,7 +10,7 @@ use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
 use super::api::{
-    batch, contact_angles, docs, evaluations, health, liquids, metrics, problems, surfaces, version,
+    batch, contact_angles, docs, evaluations, health, liquids, metrics, pours, problems, surfaces, version,
 };
 use super::contract;
 use super::layers::House;
@@ -23,6 +23,7 @@ fn resources() -> OpenApiRouter<Shared> {
         .routes(routes!(evaluations::evaluate))
         .routes(routes!(batch::evaluate_batch))
         .routes(routes!(contact_angles::contact_angles))
+        .routes(routes!(pours::pour))
         .routes(routes!(liquids::list_liquids))
         .routes(routes!(liquids::liquid))
         .routes(routes!(surfaces::list_surfaces))

@@ -11,7 +11,8 @@ use serde_json::Value;
 /// Checks the rows whose name starts with `prefix`, to the row's tolerance in m³.
 fn check(prefix: &str, expected_rows: usize, vessel: impl Fn(&dyn Fn(&str) -> f64) -> Vessel) {
     let rows: Vec<Value> = serde_json::from_str(include_str!("data/vessel.json")).unwrap();
-    let rows: Vec<&Value> = rows.iter().filter(|row| row["name"].as_str().unwrap().starts_with(prefix)).collect();
+    let rows: Vec<&Value> =
+        rows.iter().filter(|row| row["name"].as_str().unwrap().starts_with(prefix)).collect();
     assert_eq!(rows.len(), expected_rows, "rows named {prefix}*");
     for row in rows {
         assert!(row["source"].is_string() && row["basis"] == "analytic", "{row}");

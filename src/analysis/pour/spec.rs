@@ -126,6 +126,12 @@ pub(super) struct Setup {
 const FLOW_UNCERTAINTY: f64 = 0.1;
 
 impl PourSpec {
+    /// Every fault of the pour that is asked for, without pouring.
+    #[must_use]
+    pub fn faults(&self) -> Vec<Fault> {
+        self.resolve().err().unwrap_or_default()
+    }
+
     /// The pour that is asked for.
     ///
     /// # Errors
@@ -263,7 +269,7 @@ impl PourSpec {
         let target = self.target_ml?;
         if target > self.fill_ml {
             let detail = format!("no more than the fill of {} mL can leave", self.fill_ml);
-            let fault = Fault::new("/target_ml", "out_of_range", detail);
+            let fault = Fault::new("/target_ml", "beyond_fill", detail);
             faults.push(fault.within(quantity::FILL.minimum, self.fill_ml));
             return None;
         }
