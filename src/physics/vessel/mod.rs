@@ -126,7 +126,7 @@ impl Plane {
 
 #[derive(Debug, Clone, PartialEq)]
 enum Shape {
-    Revolved(Revolved),
+    Revolved(Box<Revolved>),
     Cuboid(Cuboid),
 }
 
@@ -165,7 +165,7 @@ impl Vessel {
     pub fn revolved(profile: &[[f64; 2]]) -> Result<Self, VesselFault> {
         let body = Revolved::new(profile)?;
         let lip = LipPosition { radius: body.brim_radius(), height: body.height() };
-        Ok(Self { shape: Shape::Revolved(body), lip })
+        Ok(Self { shape: Shape::Revolved(Box::new(body)), lip })
     }
 
     /// A box, m: `length` along the pour, `width` across it.

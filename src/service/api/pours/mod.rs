@@ -14,7 +14,7 @@ use http::{HeaderMap, HeaderValue, header};
 
 pub use self::{
     answer::PourAnswer,
-    request::{EXAMPLE, VesselPourRequest},
+    request::{DEMO, EXAMPLE, VesselPourRequest},
 };
 use crate::{
     analysis::pour::pour as pour_out,

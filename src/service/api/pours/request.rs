@@ -227,6 +227,9 @@ const fn default_drop() -> Drop {
 /// A realistic request.
 pub const EXAMPLE: &str = include_str!("example.json");
 
+/// The demonstration: an invented 1.2 L jug poured with cold milk, hot tea and sunflower oil, its lip new and worn. A list of {name, request}.
+pub const DEMO: &str = include_str!("demo.json");
+
 fn example() -> serde_json::Value {
     serde_json::from_str(EXAMPLE).unwrap_or_default()
 }
