@@ -265,3 +265,61 @@ async fn faults_are_told_together_and_none_of_a_stand_in() {
     // Whether 5 L is too much cannot be told of a vessel that is none.
     assert!(!pointers.contains(&"/fill_ml"), "{faults:?}");
 }
+
+/// Every leaf of the request replaced by every kind of wrong value: an answer, or faults that say where.
+#[tokio::test]
+async fn whatever_stands_in_a_leaf_is_answered_or_explained() {
+    fn leaves(at: &Value, pointer: &str, found: &mut Vec<String>) {
+        match at {
+            Value::Object(members) => {
+                members.iter().for_each(|(name, value)| leaves(value, &format!("{pointer}/{}", name.replace('/', "~1")), found))
+            }
+            Value::Array(items) => {
+                items.iter().enumerate().for_each(|(i, item)| leaves(item, &format!("{pointer}/{i}"), found))
+            }
+            _ => found.push(pointer.to_owned()),
+        }
+        if !pointer.is_empty() && at.as_object().is_some_and(|members| !members.is_empty()) {
+            found.push(pointer.to_owned());
+        }
+    }
+    let service = service(&state(|_| {}));
+    let mut course = jug();
+    course["tilt"] = json!({"program": {"points": [[0, 0], [4, 48], [8, 0]]}});
+    course["uncertainty"] = json!({"/lip/edge/rounded/radius_mm": 0.03});
+    course["vessel"] = json!({"cone": {"top_diameter_mm": 100, "bottom_diameter_mm": 0, "height_mm": 400}});
+    course.as_object_mut().unwrap().remove("lip_position");
+    for base in [jug(), course] {
+        let mut places = Vec::new();
+        leaves(&base, "", &mut places);
+        for place in places {
+            for value in [
+                json!(null),
+                json!("x"),
+                json!(-1),
+                json!(1e300),
+                json!([]),
+                json!({}),
+                json!(true),
+                json!(0),
+            ] {
+                let mut request = base.clone();
+                *request.pointer_mut(&place).unwrap() = value.clone();
+                let answer = post_json(&service, PATH, request.to_string()).await;
+                if answer.status == StatusCode::OK {
+                    continue;
+                }
+                assert_eq!(answer.status, StatusCode::UNPROCESSABLE_ENTITY, "{place} = {value}");
+                let problem = answer.problem();
+                let faults = problem["errors"].as_array().unwrap();
+                assert!(!faults.is_empty(), "{place} = {value}");
+                for fault in faults {
+                    assert!(
+                        fault["code"] != "invalid" && fault["code"] != "not_computable",
+                        "{place} = {value}: {fault}"
+                    );
+                }
+            }
+        }
+    }
+}

@@ -21,6 +21,8 @@ pub(super) struct Attitude {
     pub volume: f64,
     /// Level above the lip, m.
     pub head: f64,
+    /// Level above the highest point of the floor, m: what drives the flow.
+    pub over_sill: f64,
     /// What flows over a wetted lip, m³/s.
     pub flow: f64,
     /// Slope of the floor, rad.
@@ -43,7 +45,7 @@ impl Setup {
         let liquid = &self.dry.case.liquid;
         let flow = rated_flow(&self.dry.case.lip.section, &run, liquid.kinematic_viscosity(), over_sill)?;
         let known = head.is_finite() && flow.is_finite();
-        known.then_some(Attitude { time, tilt, volume, head, flow, slope: run.slope, cut })
+        known.then_some(Attitude { time, tilt, volume, head, over_sill, flow, slope: run.slope, cut })
     }
 
     /// How far the vessel is beyond where liquid begins to run (negative: not yet): the flow over the least one, and on a dry lip the head over what surface tension

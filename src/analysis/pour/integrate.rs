@@ -12,7 +12,7 @@ use crate::{
     analysis::decision::{Decision, Verdict},
     physics::{
         numerics::{Bracket, find_root},
-        stream::StreamFault,
+        stream::{SMALL_HEAD, StreamFault},
     },
 };
 
@@ -342,7 +342,7 @@ impl Pouring<'_> {
         if out_of_range {
             self.course.undecided += whole;
         }
-        if step.from.head.max(step.to.head) < crate::physics::stream::SMALL_HEAD {
+        if step.from.over_sill.max(step.to.over_sill) < SMALL_HEAD {
             self.course.small_head += whole;
         }
         self.course.largest_head = self.course.largest_head.max(step.to.head).max(step.from.head);
@@ -442,6 +442,7 @@ impl Pouring<'_> {
         if let Some((at, judgement)) = found {
             let mut sample = self.sample(&at, true, &judgement);
             sample.attached = b < 0.0;
+            sample.landing = sample.landing.filter(|_| !sample.attached);
             self.course.samples.push(sample);
         }
         Ok(share)

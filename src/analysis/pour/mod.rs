@@ -13,12 +13,14 @@ mod flags;
 mod integrate;
 mod landing;
 mod programme;
+mod search;
 mod spec;
 
 use std::sync::atomic::AtomicBool;
 
 pub use integrate::{Decided, Sample, Span};
 pub use landing::Landing;
+pub use search::{Found, least_dribbling_hold, least_return_rate};
 pub use spec::{LipPositionSpec, PourSpec, TiltSpec, VesselSpec};
 
 use self::{

@@ -2,7 +2,9 @@ use std::sync::atomic::AtomicBool;
 
 use proptest::prelude::*;
 
-use super::{LipPositionSpec, Pour, PourSpec, TiltSpec, VesselSpec, pour};
+use super::{
+    LipPositionSpec, Pour, PourSpec, TiltSpec, VesselSpec, least_dribbling_hold, least_return_rate, pour,
+};
 use crate::{
     analysis::{
         fault::Fault,
@@ -197,6 +199,37 @@ fn quick_cut_off_dribbles_less_than_slow() {
     let (slow, quick) = (dribbled(5.0), dribbled(300.0));
     assert!(quick.dribbling_end < slow.dribbling_end, "{} {}", quick.dribbling_end, slow.dribbling_end);
     assert!(has(&quick, "faster_than_slosh") && !has(&slow, "faster_than_slosh"));
+}
+
+#[test]
+fn searches_find_what_pours_confirm() {
+    let never = AtomicBool::new(false);
+    let mut spec = jug();
+    let with_rate = |spec: &PourSpec, rate: f64| {
+        let TiltSpec::Steady { rate_deg_s, hold_deg, hold_s, .. } = spec.tilt else { panic!() };
+        let tilt = TiltSpec::Steady { rate_deg_s, hold_deg, hold_s, return_rate_deg_s: rate };
+        poured(&PourSpec { tilt, ..spec.clone() }).dribbled.value
+    };
+    let (slow, quick) = (with_rate(&spec, 3.0), with_rate(&spec, 500.0));
+    let most = 0.5 * (slow + quick);
+    let found = least_return_rate(&spec, most, &never).unwrap().unwrap();
+    assert!(
+        with_rate(&spec, found.value) <= most && with_rate(&spec, found.value / 1.02) > most,
+        "{found:?}"
+    );
+    assert_eq!(least_return_rate(&spec, 0.0, &never).unwrap(), None);
+    spec.target_ml = Some(150.0);
+    let found = least_dribbling_hold(&spec, &never).unwrap().unwrap();
+    let at = |hold_deg: f64| {
+        let tilt = TiltSpec::Steady { rate_deg_s: 15.0, hold_deg, hold_s: 2.0, return_rate_deg_s: 45.0 };
+        poured(&PourSpec { tilt, ..spec.clone() })
+    };
+    assert_eq!(at(found.value).dribbled.value, found.dribbled);
+    assert!(!has(&at(found.value), "target_not_reached"));
+    for hold in [50.0, 60.0, 80.0] {
+        let other = at(hold);
+        assert!(has(&other, "target_not_reached") || other.dribbled.value >= found.dribbled, "{hold}");
+    }
 }
 
 #[test]
