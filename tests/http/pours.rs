@@ -271,9 +271,9 @@ async fn faults_are_told_together_and_none_of_a_stand_in() {
 async fn whatever_stands_in_a_leaf_is_answered_or_explained() {
     fn leaves(at: &Value, pointer: &str, found: &mut Vec<String>) {
         match at {
-            Value::Object(members) => {
-                members.iter().for_each(|(name, value)| leaves(value, &format!("{pointer}/{}", name.replace('/', "~1")), found))
-            }
+            Value::Object(members) => members.iter().for_each(|(name, value)| {
+                leaves(value, &format!("{pointer}/{}", name.replace('/', "~1")), found)
+            }),
             Value::Array(items) => {
                 items.iter().enumerate().for_each(|(i, item)| leaves(item, &format!("{pointer}/{i}"), found))
             }

@@ -1,7 +1,7 @@
 //! Where a pour deserves less trust, or does not do what was asked.
 
 use super::{
-    integrate::{Course, Sample},
+    course::{Course, Sample},
     spec::{PourSpec, Setup},
 };
 use crate::{

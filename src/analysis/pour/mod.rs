@@ -9,6 +9,7 @@
 
 mod attachment;
 mod attitude;
+mod course;
 mod flags;
 mod integrate;
 mod landing;
@@ -18,13 +19,14 @@ mod spec;
 
 use std::sync::atomic::AtomicBool;
 
-pub use integrate::{Decided, Sample, Span};
+pub use course::{Decided, Sample, Span};
 pub use landing::Landing;
 pub use search::{Found, least_dribbling_hold, least_return_rate};
 pub use spec::{LipPositionSpec, PourSpec, TiltSpec, VesselSpec};
 
 use self::{
-    integrate::{Course, IntegrationFault, integrate},
+    course::Course,
+    integrate::{IntegrationFault, integrate},
     spec::Setup,
 };
 use super::{cautions::cautions, fault::Fault, notice::Notice, resolve::Resolved};
