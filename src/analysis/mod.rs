@@ -15,6 +15,7 @@ pub mod fault;
 pub mod field;
 pub mod flow_limit;
 pub mod notice;
+pub mod pour;
 pub mod remedy;
 pub mod resolve;
 pub mod spec;

@@ -5,4 +5,6 @@
 mod facts;
 mod hydraulics;
 mod liquids;
+mod pour;
+mod vessel;
 mod wetting;

@@ -12,6 +12,7 @@ pub mod liquid;
 pub mod liquids;
 pub mod metrics;
 pub mod notice;
+pub mod pours;
 pub mod problems;
 pub mod property;
 pub mod quantity;

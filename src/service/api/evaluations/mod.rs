@@ -8,7 +8,8 @@ use axum::response::Response;
 use http::{HeaderMap, HeaderValue, header};
 
 pub use answer::EvaluationAnswer;
-pub use request::{EXAMPLE, EvaluationRequest, PourRequest};
+pub use parts::{IntervalAnswer, VerdictAnswer};
+pub use request::{EXAMPLE, EvaluationRequest, MethodRequest, OuterFaceRequest, PourRequest};
 
 use crate::{
     analysis::{evaluation, fault::Fault},
