@@ -11,6 +11,7 @@ mod cross_origin;
 mod designs;
 mod evaluations;
 mod lookups;
+mod pictures;
 mod problems;
 mod properties;
 mod readme;
