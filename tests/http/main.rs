@@ -12,6 +12,7 @@ mod designs;
 mod evaluations;
 mod lookups;
 mod pours;
+mod pictures;
 mod problems;
 mod properties;
 mod readme;
