@@ -10,8 +10,8 @@ use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
 use super::api::{
-    batch, contact_angles, designs, docs, evaluations, health, liquids, metrics, pours, problems, surfaces, sweeps,
-    version,
+    batch, contact_angles, designs, docs, evaluations, health, liquids, metrics, pours, problems, surfaces,
+    sweeps, version,
 };
 use super::contract;
 use super::layers::House;

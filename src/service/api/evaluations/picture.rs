@@ -1,6 +1,7 @@
 //! The evaluation as a picture: the answer's numbers in words beside the lip.
 
-use super::answer::{EvaluationAnswer, IntervalAnswer, RegimeAnswer};
+use super::answer::EvaluationAnswer;
+use super::parts::{IntervalAnswer, RegimeAnswer};
 use crate::{
     analysis::{
         decision::Verdict,
