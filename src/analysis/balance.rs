@@ -123,6 +123,7 @@ pub fn weigh(case: &Case, edge: &Prepared, stream: Stream, thickness: f64) -> Ba
 /// Changes of ln(safety factor) per unit of ln thickness and of ln speed of the stream.
 ///
 /// ln S = ln We − ln We_c with We = ρU²h/γ, Re = ρUh/μ, Fr = U²/(gh), r/h.
+#[inline(always)]
 #[must_use]
 pub fn by_film(t: &Threshold) -> Pair {
     Pair {
@@ -161,6 +162,7 @@ pub struct Pair {
 
 impl Pair {
     /// What an input that changes thickness and speed by `change` does.
+    #[inline(always)]
     #[must_use]
     pub fn through(self, change: Self) -> f64 {
         self.thickness * change.thickness + self.speed * change.speed

@@ -1,10 +1,6 @@
 //! The standard normal distribution, on portable functions (statistics crates call the platform's).
 
-/// Φ(x), the probability below `x`.
-#[must_use]
-pub fn normal_cdf(x: f64) -> f64 {
-    0.5 * libm::erfc(-x * core::f64::consts::FRAC_1_SQRT_2)
-}
+use super::lanes::normal_cdf;
 
 /// The quantile: the `x` with Φ(x) = `p`, for 0 < p < 1; NaN otherwise.
 ///
