@@ -24,7 +24,7 @@ pub(super) fn picture(spec: &Spec, evaluation: &Evaluation, answer: &EvaluationA
         answer.model.version, answer.model.coefficients, answer.model.fingerprint
     );
     lip(&LipPicture {
-        heading: Heading { title: &title(verdict, answer), subtitle: &subtitle(spec), note: &note },
+        heading: Heading { title: &title(verdict, answer), subtitle: &conditions(spec), note: &note },
         verdict,
         section: spec.section,
         radius_mm: spec.radius_mm,
@@ -54,7 +54,9 @@ fn title(verdict: Verdict, answer: &EvaluationAnswer<'_>) -> String {
     format!("{says}; dribble probability {}", percent(probability))
 }
 
-fn subtitle(spec: &Spec) -> String {
+/// The conditions of a question in a line.
+#[must_use]
+pub fn conditions(spec: &Spec) -> String {
     let liquid = match &spec.liquid {
         LiquidSpec::Catalogue { entry, conditions, .. } => {
             format!("{} at {}", entry.name, with_unit(conditions.temperature_c, "°C"))
