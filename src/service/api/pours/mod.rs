@@ -1,6 +1,7 @@
 //! `POST /v1/pours`: a whole pour from a tilting vessel, to its last drop.
 
 mod answer;
+mod picture;
 mod request;
 mod series;
 
@@ -25,6 +26,7 @@ use crate::{
         fingerprint::ModelAnswer,
         negotiation::{ARROW, CSV, JSON, choose},
         problem::Problem,
+        render::SVG,
         state::Shared,
         table::csv,
     },
@@ -34,19 +36,20 @@ use crate::{
 ///
 /// Tilts the vessel, follows level and flow, decides at every instant whether the stream leaves or clings, with the memory that a wetted face has, and says how much is
 /// served, how much runs down the outside and when, where the stream lands and what the last drop does. As CSV or as an Arrow stream: the series
-/// alone.
+/// alone. As SVG: tilt, flow and safety factor against time, and the tilted vessel at rest, at the start, at the largest flow and at the end.
 #[utoipa::path(post, path = "/v1/pours", tag = "lip",
     request_body(content = VesselPourRequest, description = "Vessel, fill, tilt, lip, surface and liquid"),
     responses((status = 200, description = "What the pour comes to", content(
         (PourAnswer<'static> = "application/json"),
         (String = "text/csv"),
-        (String = "application/vnd.apache.arrow.stream")))))]
+        (String = "application/vnd.apache.arrow.stream"),
+        (String = "image/svg+xml")))))]
 pub async fn pour(
     State(state): State<Shared>,
     headers: HeaderMap,
     JsonBytes(bytes): JsonBytes,
 ) -> Result<Response, Problem> {
-    let media_type = choose(&headers, &[JSON, CSV, ARROW])?;
+    let media_type = choose(&headers, &[JSON, CSV, ARROW, SVG])?;
     let request: VesselPourRequest = read(&bytes)?;
     // A pour takes as long as dozens of evaluations: it waits for its turn among the long computations, up to the request's own deadline.
     let turn = state.heavy.clone().acquire_owned().await;
@@ -87,6 +90,7 @@ fn answer(
         CSV => series::csv(&pour),
         ARROW => series::arrow(&pour, &model)
             .map_err(|_| Problem::internal("The series does not fit its own schema."))?,
+        SVG => picture::picture(&spec, &pour, &model).into_bytes(),
         _ => serde_json::to_vec(&PourAnswer::new(&pour, model.clone()))
             .map_err(|_| Problem::internal("The answer holds a number that is not finite."))?,
     };
