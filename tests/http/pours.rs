@@ -144,6 +144,41 @@ async fn the_series_has_one_row_per_instant_in_both_forms() {
 }
 
 #[tokio::test]
+async fn the_picture_says_what_the_answer_says() {
+    let mut idle = jug();
+    idle["fill_ml"] = json!(100);
+    idle["tilt"]["steady"]["hold_deg"] = json!(1);
+    idle["target_ml"] = json!(50);
+    for (request, moments) in [(jug(), 4), (idle, 2)] {
+        let answer = ask(&request).await;
+        let drawn = called(&request, "image/svg+xml").await;
+        assert_eq!((drawn.status, drawn.header("content-type")), (StatusCode::OK, "image/svg+xml"));
+        let svg = String::from_utf8(drawn.body.to_vec()).unwrap();
+        let document = roxmltree::Document::parse(&svg).unwrap();
+        let text = |name: &str| {
+            let found = document.root_element().children().find(|n| n.tag_name().name() == name);
+            found.and_then(|n| n.text()).unwrap().to_owned()
+        };
+        let (title, says) = (text("title"), text("desc"));
+        assert!(says.contains(&format!("vessel at {moments} moments")), "{says}");
+        let spans = answer["dribbling_spans"].as_array().unwrap().len();
+        assert_eq!(
+            says.matches("runs down the outside (best estimate) from").count(),
+            spans.min(20),
+            "{says}"
+        );
+        assert!(svg.contains(answer["model"]["fingerprint"].as_str().unwrap()));
+        if moments == 4 {
+            let served: f64 = title.split(' ').next().unwrap().parse().unwrap();
+            assert!((served / number(&answer["served_ml"]) - 1.0).abs() < 5e-3, "{title}");
+        } else {
+            assert_eq!(title, "Nothing leaves the vessel");
+            assert!(answer["starts_s"].is_null());
+        }
+    }
+}
+
+#[tokio::test]
 async fn the_same_request_gives_the_same_bytes() {
     let service = service(&state(|_| {}));
     let first = post_json(&service, PATH, jug().to_string()).await.body;
