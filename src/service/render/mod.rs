@@ -6,6 +6,7 @@
 mod axis;
 mod bars;
 mod contour;
+mod course;
 mod curve;
 mod histogram;
 mod lip;
@@ -23,6 +24,7 @@ mod zone;
 
 pub use axis::{Axis, Scale};
 pub use bars::{Bar, BarChart, MOST_BARS, bars};
+pub use course::course;
 pub use curve::{Curve, CurveChart, CurvePoint, MOST_CURVES, Mark, curve};
 pub use histogram::{Histogram, Limit, Side, histogram};
 pub use lip::{Between, LipPicture, lip};

@@ -54,9 +54,8 @@ fn title(verdict: Verdict, answer: &EvaluationAnswer<'_>) -> String {
     format!("{says}; dribble probability {}", percent(probability))
 }
 
-/// The conditions of a question in a line.
-#[must_use]
-pub fn conditions(spec: &Spec) -> String {
+/// What is poured over what.
+pub(in crate::service::api) fn materials(spec: &Spec) -> String {
     let liquid = match &spec.liquid {
         LiquidSpec::Catalogue { entry, conditions, .. } => {
             format!("{} at {}", entry.name, with_unit(conditions.temperature_c, "°C"))
@@ -74,8 +73,15 @@ pub fn conditions(spec: &Spec) -> String {
         OuterFace::Dry => "dry",
         OuterFace::Wet => "wet",
     };
+    format!("{liquid} · {surface}, outer face {face}")
+}
+
+/// The conditions of a question in a line.
+#[must_use]
+pub fn conditions(spec: &Spec) -> String {
     format!(
-        "{liquid} · {surface}, outer face {face} · {} · verdict and intervals at {} confidence",
+        "{} · {} · verdict and intervals at {} confidence",
+        materials(spec),
         with_unit(spec.flow_ml_s, "mL/s"),
         percent(spec.confidence)
     )

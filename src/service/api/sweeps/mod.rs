@@ -22,6 +22,7 @@ use crate::service::{
     problem::Problem,
     render::SVG,
     state::Shared,
+    table::csv,
 };
 
 /// The model that made a result, where the result itself has no place for it: a dictionary (RFC 9651).
@@ -69,7 +70,7 @@ pub async fn sweep(
     let mut response = Response::new(Body::empty());
     let headers = response.headers_mut();
     let content_type = match form {
-        Form::Csv => "text/csv; charset=utf-8; header=present",
+        Form::Csv => csv::CONTENT_TYPE,
         Form::Json | Form::Arrow | Form::Events => media_type,
     };
     headers.insert(header::CONTENT_TYPE, HeaderValue::from_static(content_type));
