@@ -1,6 +1,9 @@
 //! Inertia against wetting at one pour rate: the stream, its numbers, its threshold. No other place computes a Weber number.
 
-use super::case::{Case, Primary, Slopes};
+use super::{
+    calibration::Place,
+    case::{Case, Primary, Slopes},
+};
 use crate::physics::{
     lip::{Run, Section},
     liquid::Liquid,
@@ -54,7 +57,11 @@ pub fn film_numbers(case: &Case, flow: f64) -> Result<Numbers, StreamFault> {
 pub fn weigh(case: &Case, edge: &Edge, stream: Stream, thickness: f64) -> Balance {
     let film = Film { thickness, speed: stream.speed };
     let numbers = Numbers::of(film, &case.liquid, case.lip.edge.radius);
-    let threshold = edge.threshold(case.coefficients, &numbers);
+    let mut threshold = edge.threshold(case.coefficients, &numbers);
+    if let Some(calibration) = &case.calibration {
+        let place = Place::of(&numbers, edge.contact_angle(), case.lip.edge.turn);
+        threshold = calibration.corrected(&threshold, &place);
+    }
     let ln_safety_factor = libm::log(numbers.weber) - threshold.ln_critical_weber;
     Balance { stream, numbers, threshold, ln_safety_factor }
 }

@@ -2,6 +2,7 @@
 
 use super::{
     balance::{Balance, balance, prepare},
+    calibration::Place,
     case::{Case, Input, Primary, Shift, Slopes, Source},
 };
 use crate::physics::{
@@ -107,7 +108,12 @@ pub fn decide(case: &Case) -> Result<Decision, StreamFault> {
     let edge = prepare(case, case.contact_angle);
     let balance = balance(case, &edge, case.flow)?;
     let slopes = balance.slopes(case, case.flow)?;
-    let reach = edge.reach(case.coefficients, &balance.numbers);
+    let mut reach = edge.reach(case.coefficients, &balance.numbers);
+    if let Some(calibration) = &case.calibration {
+        let place = Place::of(&balance.numbers, case.contact_angle, case.lip.edge.turn);
+        reach.standard_uncertainty =
+            calibration.standard_uncertainty(reach.standard_uncertainty, case.coefficients, &place);
+    }
     let mut decision = Decision {
         verdict: Verdict::Marginal,
         dribble_probability: 0.5,

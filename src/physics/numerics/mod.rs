@@ -5,6 +5,6 @@ mod normal;
 mod quadrature;
 mod root;
 
-pub use normal::{normal_cdf, normal_quantile};
+pub use normal::{ln_normal_cdf, normal_cdf, normal_hazard_below, normal_quantile};
 pub use quadrature::gauss_legendre_8;
 pub use root::{Bracket, find_root};

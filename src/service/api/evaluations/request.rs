@@ -201,6 +201,7 @@ impl EvaluationRequest {
             confidence: self.confidence.get(),
             uncertainty: Uncertainties::default(),
             coefficients: coefficients.unwrap_or(DEFAULT_SET),
+            calibration: None,
         };
         for (field, value) in uncertainties {
             let part_known = match field.pointer().split('/').nth(1) {
