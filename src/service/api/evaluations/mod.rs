@@ -1,6 +1,7 @@
 //! `POST /v1/evaluations`: does this lip dribble, by what margin, how surely, and what would mend it?
 
 mod answer;
+mod parts;
 mod request;
 
 use axum::response::Response;
