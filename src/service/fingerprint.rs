@@ -29,9 +29,7 @@ impl ModelAnswer {
     /// The model that answered `request`, a request with its defaults filled in and its members in canonical order.
     #[must_use]
     pub fn of<T: Serialize>(request: &T, coefficients: &'static str) -> Self {
-        let mut bytes = Vec::with_capacity(1024);
-        // Writing into memory cannot fail, and a request is made of strings, lists and finite numbers.
-        let _ = request.serialize(&mut serde_json::Serializer::with_formatter(&mut bytes, Canonical));
+        let mut bytes = canonical_bytes(request);
         let mut hash = Sha256::new();
         bytes.push(0);
         bytes.extend_from_slice(VERSION.as_bytes());
@@ -40,6 +38,18 @@ impl ModelAnswer {
         hash.update(&bytes);
         Self { version: VERSION, coefficients, fingerprint: hexadecimal(&hash.finalize()) }
     }
+}
+
+/// SHA-256 over the canonical form (RFC 8785) of `value`, whose members stand in canonical order.
+pub(super) fn digest_of<T: Serialize>(value: &T) -> String {
+    hexadecimal(&Sha256::digest(canonical_bytes(value)))
+}
+
+fn canonical_bytes<T: Serialize>(value: &T) -> Vec<u8> {
+    let mut bytes = Vec::with_capacity(1024);
+    // Writing into memory cannot fail, and a request is made of strings, lists and finite numbers.
+    let _ = value.serialize(&mut serde_json::Serializer::with_formatter(&mut bytes, Canonical));
+    bytes
 }
 
 /// SHA-256 over everything the catalogue says of liquids and surfaces.
@@ -63,7 +73,7 @@ pub fn catalogue_digest() -> &'static str {
     })
 }
 
-fn hexadecimal(bytes: &[u8]) -> String {
+pub(super) fn hexadecimal(bytes: &[u8]) -> String {
     const DIGITS: [char; 16] =
         ['0', '1', '2', '3', '4', '5', '6', '7', '8', '9', 'a', 'b', 'c', 'd', 'e', 'f'];
     let digit = |nibble: u8| DIGITS[usize::from(nibble & 15)];
@@ -82,9 +92,7 @@ impl Formatter for Canonical {
 /// The canonical form (RFC 8785) of what serde writes in canonical order.
 #[cfg(test)]
 fn canonical<T: Serialize>(value: &T) -> String {
-    let mut bytes = Vec::new();
-    value.serialize(&mut serde_json::Serializer::with_formatter(&mut bytes, Canonical)).unwrap();
-    String::from_utf8(bytes).unwrap()
+    String::from_utf8(canonical_bytes(value)).unwrap()
 }
 
 #[cfg(test)]

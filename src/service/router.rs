@@ -10,7 +10,7 @@ use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
 use super::api::{
-    batch, contact_angles, docs, evaluations, health, liquids, metrics, problems, surfaces, version,
+    batch, calibrations, contact_angles, docs, evaluations, health, liquids, metrics, problems, surfaces, version,
 };
 use super::contract;
 use super::layers::House;
@@ -22,6 +22,7 @@ fn resources() -> OpenApiRouter<Shared> {
     OpenApiRouter::with_openapi(contract::ground())
         .routes(routes!(evaluations::evaluate))
         .routes(routes!(batch::evaluate_batch))
+        .routes(routes!(calibrations::calibrate))
         .routes(routes!(contact_angles::contact_angles))
         .routes(routes!(liquids::list_liquids))
         .routes(routes!(liquids::liquid))
