@@ -48,8 +48,12 @@ fn calibration_warnings(
         "Reynolds number",
         "Froude number",
     ];
-    let beyond: Vec<&str> =
-        names.into_iter().zip(calibration.beyond(&place)).filter(|(_, beyond)| *beyond).map(|(n, _)| n).collect();
+    let beyond: Vec<&str> = names
+        .into_iter()
+        .zip(calibration.beyond(&place))
+        .filter(|(_, beyond)| *beyond)
+        .map(|(n, _)| n)
+        .collect();
     if !beyond.is_empty() {
         found.push(Notice::at(
             "beyond_calibration",

@@ -131,7 +131,8 @@ fn faults_elsewhere<T: Request>(document: &Value, known: &[Fault]) -> Vec<Fault>
             && !broken.exactly(&at)
             && let Some(sound) = sound.first()
         {
-            let mended = items.iter().enumerate().map(|(i, item)| broken.mended(&format!("{at}/{i}"), item, sound));
+            let mended =
+                items.iter().enumerate().map(|(i, item)| broken.mended(&format!("{at}/{i}"), item, sound));
             filled.insert(name.clone(), Value::Array(mended.collect()));
         }
     }
@@ -152,7 +153,9 @@ impl Broken<'_> {
 
     /// Whether there is a fault at this place or in it.
     fn within(&self, at: &str) -> bool {
-        let inside = |pointer: &str| pointer.strip_prefix(at).is_some_and(|rest| rest.is_empty() || rest.starts_with('/'));
+        let inside = |pointer: &str| {
+            pointer.strip_prefix(at).is_some_and(|rest| rest.is_empty() || rest.starts_with('/'))
+        };
         self.0.iter().any(|fault| inside(&fault.pointer))
     }
 

@@ -110,6 +110,20 @@ mod tests {
     }
 
     #[test]
+    fn calibration_requests_and_calibrations_serialise_in_canonical_form() {
+        use crate::service::api::calibrations::{CalibrationsRequest, calibrate_json};
+        let request: CalibrationsRequest = serde_json::from_str(CalibrationsRequest::sound()).unwrap();
+        let answer = calibrate_json(CalibrationsRequest::sound().as_bytes()).unwrap();
+        let answer: serde_json::Value = serde_json::from_slice(&answer).unwrap();
+        let mut evaluation: serde_json::Value = serde_json::from_str(EvaluationRequest::sound()).unwrap();
+        evaluation["calibration"] = answer["calibration"].clone();
+        let evaluation: EvaluationRequest = serde_json::from_value(evaluation).unwrap();
+        let theirs = |value| serde_json_canonicalizer::to_string(&value).unwrap();
+        assert_eq!(canonical(&request), theirs(serde_json::to_value(&request).unwrap()));
+        assert_eq!(canonical(&evaluation), theirs(serde_json::to_value(&evaluation).unwrap()));
+    }
+
+    #[test]
     fn defaults_filled_in_or_given_make_the_same_fingerprint() {
         let text = EvaluationRequest::sound();
         let plain: EvaluationRequest = serde_json::from_str(text).unwrap();

@@ -10,7 +10,8 @@ use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
 use super::api::{
-    batch, calibrations, contact_angles, docs, evaluations, health, liquids, metrics, problems, surfaces, version,
+    batch, calibrations, contact_angles, docs, evaluations, health, liquids, metrics, problems, surfaces,
+    version,
 };
 use super::contract;
 use super::layers::House;

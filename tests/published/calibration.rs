@@ -191,9 +191,7 @@ fn ours(bench: &Bench, name: &str) -> Vec<f64> {
     match what {
         "combined_true_posterior_mean" => ours(bench, "calib_nested_combined_mean"),
         "combined_true_posterior_sd" => ours(bench, "calib_nested_combined_sd"),
-        "onset_ols_params" => {
-            mode_at(&bench.rows("onset_only"), &flat, -1.0, &[0.0; 3]).unwrap().b.to_vec()
-        }
+        "onset_ols_params" => mode_at(&bench.rows("onset_only"), &flat, -1.0, &[0.0; 3]).unwrap().b.to_vec(),
         "onset_ols_s" => {
             let rows = bench.rows("onset_only");
             let b = mode_at(&rows, &flat, -1.0, &[0.0; 3]).unwrap().b;
@@ -286,8 +284,8 @@ fn one_half_after_the_other(bench: &Bench) -> Vec<f64> {
     let mut grid: Vec<GridPoint> = (-80..=80)
         .map(|i| {
             let ln_scatter = moments.ln_scatter + 0.08 * moments.ln_scatter_sd * f64::from(i);
-            let mean = [0, 1, 2]
-                .map(|j| moments.mean[j] + with_s[j] / variance * (ln_scatter - moments.ln_scatter));
+            let mean =
+                [0, 1, 2].map(|j| moments.mean[j] + with_s[j] / variance * (ln_scatter - moments.ln_scatter));
             let prior = Prior {
                 mean,
                 precision,

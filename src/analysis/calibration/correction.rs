@@ -193,8 +193,8 @@ mod tests {
     #[test]
     fn between_the_bench_rows_it_is_the_linear_model() {
         let at = place(0.3, 80.0);
-        let shift = 0.2 - 0.15 * libm::log(0.3 / 0.45)
-            + 0.1 * libm::log((1.0 + libm::cos(80.0 * DEGREE)) / 1.2);
+        let shift =
+            0.2 - 0.15 * libm::log(0.3 / 0.45) + 0.1 * libm::log((1.0 + libm::cos(80.0 * DEGREE)) / 1.2);
         let plain = threshold(&at);
         let corrected = calibration().corrected(&plain, &at);
         assert!((corrected.ln_critical_weber - plain.ln_critical_weber - shift).abs() < 1e-14);

@@ -34,8 +34,8 @@ fn standing(row: &Row, mixture: &Mixture) -> Standing {
         let rest = (1.0 - own).max(1e-12);
         // Without the row: mode moved by C x g/(1 − h q), covariance C + h C x xᵀ C/(1 − h q).
         let moved = spread * misfit.slope / rest;
-        let ln_weight = libm::log(point.weight) + misfit.value + 0.5 * moved * misfit.slope
-            - 0.5 * libm::log(rest);
+        let ln_weight =
+            libm::log(point.weight) + misfit.value + 0.5 * moved * misfit.slope - 0.5 * libm::log(rest);
         let (below, above) = row.probabilities(dot(x, &point.mean) + moved, spread / rest + s * s);
         parts.push((ln_weight, 0.5 * (below + above), 0.5 * (2.0 - below - above)));
         largest = largest.max(ln_weight);

@@ -30,6 +30,8 @@ mod matrix;
 mod mixture;
 mod posterior;
 mod prior;
+#[cfg(test)]
+mod recovery;
 mod remarks;
 mod row;
 mod separation;

@@ -16,6 +16,10 @@ pub const GRID: usize = 31;
 /// The grid ends where the posterior density of ln s has fallen to exp(−18) of its peak: six standard deviations of a normal one.
 const ENDS: f64 = 18.0;
 
+/// ln of the smallest scatter looked at: no bench reproduces We_c to two parts in a thousand (own judgement). Without it, equal readings that claim to be exact
+/// would send the scatter to zero.
+pub const LEAST_LN_SCATTER: f64 = -6.214_608_098_422_191;
+
 /// Most steps of any search. Newton's method on these functions needs a handful.
 const MOST_STEPS: usize = 60;
 
@@ -124,6 +128,9 @@ pub fn posterior(rows: &[Row], prior: &Prior) -> Result<Mixture, FitFault> {
         let mut start = mode.b;
         for steps in 1..=MOST_STEPS {
             let ln_s = peak + direction * 0.5 * width * steps as f64;
+            if ln_s <= LEAST_LN_SCATTER {
+                return Ok(LEAST_LN_SCATTER);
+            }
             let there = mode_at(rows, prior, ln_s, &start)?;
             if there.nested() - lowest > ENDS {
                 return Ok(ln_s);
@@ -138,7 +145,9 @@ pub fn posterior(rows: &[Row], prior: &Prior) -> Result<Mixture, FitFault> {
     for i in 0..GRID {
         let ln_scatter = low + (high - low) * i as f64 / (GRID - 1) as f64;
         let at = mode_at(rows, prior, ln_scatter, &start)?;
-        let weight = libm::exp(lowest - at.nested());
+        // Trapezoidal rule.
+        let share = if i == 0 || i == GRID - 1 { 0.5 } else { 1.0 };
+        let weight = share * libm::exp(lowest - at.nested());
         grid.push(GridPoint { ln_scatter, weight, mean: at.b, covariance: at.hessian.inverse() });
         start = at.b;
     }
@@ -149,10 +158,11 @@ pub fn posterior(rows: &[Row], prior: &Prior) -> Result<Mixture, FitFault> {
     Ok(Mixture { grid })
 }
 
-/// The ln s of highest nested posterior density, its standard deviation by the curvature there, and the mode of b.
+/// The ln s of highest nested posterior density, the width of the density there (its standard deviation; at the least scatter the length over which it falls), and the
+/// mode of b.
 fn peak(rows: &[Row], prior: &Prior) -> Result<(f64, f64, Mode), FitFault> {
     const STEP: f64 = 1e-3;
-    let mut ln_s = prior.ln_scatter;
+    let mut ln_s = prior.ln_scatter.max(LEAST_LN_SCATTER);
     let mut here = mode_at(rows, prior, ln_s, &prior.mean)?;
     for _ in 0..MOST_STEPS {
         let nested = |ln_s: f64| mode_at(rows, prior, ln_s, &here.b).map(|mode| mode.nested());
@@ -160,7 +170,11 @@ fn peak(rows: &[Row], prior: &Prior) -> Result<(f64, f64, Mode), FitFault> {
         let slope = (up - down) / (2.0 * STEP);
         let curvature = (up - 2.0 * middle + down) / (STEP * STEP);
         let newton = if curvature > 0.0 { -slope / curvature } else { -slope.signum() };
-        let mut step = newton.clamp(-1.0, 1.0);
+        let mut step = newton.clamp(-1.0, 1.0).max(LEAST_LN_SCATTER - ln_s);
+        if ln_s <= LEAST_LN_SCATTER + 1e-6 && slope >= 0.0 {
+            let fall = slope + curvature.max(0.0).sqrt();
+            return Ok((ln_s, 1.0 / fall, here));
+        }
         if curvature > 0.0 && slope * slope / curvature < 1e-6 {
             return Ok((ln_s, 1.0 / curvature.sqrt(), here));
         }

@@ -83,7 +83,10 @@ pub fn remarks(fit: &Fit, names: &[&str], without_sheet: &[bool]) -> Vec<Notice>
     if !flagged.is_empty() {
         found.push(Notice::new(
             "rows_flagged",
-            format!("Not what the other rows foretell: {}. They were kept; look at the notes of these pours.", listed(&flagged)),
+            format!(
+                "Not what the other rows foretell: {}. They were kept; look at the notes of these pours.",
+                listed(&flagged)
+            ),
         ));
     }
     let heavy = rows(&|i| fit.standings[i].leverage > LEVERAGE);

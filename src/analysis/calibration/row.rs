@@ -84,9 +84,8 @@ impl Row {
     /// `variance`: of the onset, s² included, u² not.
     #[must_use]
     pub fn probabilities(&self, mean: f64, variance: f64) -> (f64, f64) {
-        let below = |at: f64, more: f64| {
-            crate::physics::numerics::normal_cdf((at - mean) / (variance + more).sqrt())
-        };
+        let below =
+            |at: f64, more: f64| crate::physics::numerics::normal_cdf((at - mean) / (variance + more).sqrt());
         match self.seen {
             Seen::Onset { at, standard_uncertainty: u } => {
                 let p = below(at, u * u);

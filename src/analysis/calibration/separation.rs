@@ -52,13 +52,13 @@ fn rest_of_combination(rows: &[[f64; D]]) -> f64 {
     let mut rest = target;
     for _ in 0..10 * (rows.len() + M) {
         let gain = |i: usize| product(&column(i), &rest);
-        let best = (0..rows.len())
-            .filter(|i| chosen.iter().all(|(c, _)| c != i))
-            .map(|i| (i, gain(i)))
-            .fold(None, |best: Option<(usize, f64)>, next| match best {
+        let best = (0..rows.len()).filter(|i| chosen.iter().all(|(c, _)| c != i)).map(|i| (i, gain(i))).fold(
+            None,
+            |best: Option<(usize, f64)>, next| match best {
                 Some(best) if best.1 >= next.1 => Some(best),
                 _ => Some(next),
-            });
+            },
+        );
         let Some((next, _)) = best.filter(|(_, gain)| *gain > 1e-10) else { break };
         if chosen.len() == M {
             break;

@@ -150,8 +150,7 @@ impl Default for PriorPart {
     fn default() -> Self {
         let prior = Prior::of_the_closed_form();
         let sd = prior.precision.on_diagonal().map(|precision| 1.0 / precision.sqrt());
-        let normal =
-            |i: usize| NormalPart { mean: tidy(prior.mean[i]), standard_deviation: tidy(sd[i]) };
+        let normal = |i: usize| NormalPart { mean: tidy(prior.mean[i]), standard_deviation: tidy(sd[i]) };
         Self {
             ln_scatter: ScatterPriorPart::default(),
             offset: normal(0),
@@ -211,10 +210,7 @@ impl CalibrationPart {
             weight: tidy(point.weight),
         });
         let mut part = Self {
-            centre: CentrePart {
-                ln_radius_ratio: tidy(fit.centre[0]),
-                ln_wetting: tidy(fit.centre[1]),
-            },
+            centre: CentrePart { ln_radius_ratio: tidy(fit.centre[0]), ln_wetting: tidy(fit.centre[1]) },
             coefficients: coefficients.to_owned(),
             digest: String::new(),
             grid: grid.collect(),
@@ -246,7 +242,8 @@ impl CalibrationPart {
     /// Every reason not to trust it: another form, another set, corruption, no distribution.
     pub fn calibration(&self, at: &str, coefficients: &str) -> Result<Calibration, Vec<Fault>> {
         if self.version != FORM {
-            let detail = format!("{} is not a form of calibration that this version reads", quoted(&self.version));
+            let detail =
+                format!("{} is not a form of calibration that this version reads", quoted(&self.version));
             return Err(vec![Fault::new(format!("{at}/version"), "unknown_choice", detail).choices([FORM])]);
         }
         let mut faults = Vec::new();
@@ -360,7 +357,10 @@ impl RangesPart {
             ln(self.reynolds),
             ln(self.froude),
         ];
-        covered.iter().all(|[low, high]| low.is_finite() && high.is_finite() && low <= high).then_some(covered)
+        covered
+            .iter()
+            .all(|[low, high]| low.is_finite() && high.is_finite() && low <= high)
+            .then_some(covered)
     }
 }
 

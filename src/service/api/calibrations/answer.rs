@@ -148,7 +148,10 @@ pub fn notices(request: &CalibrationsRequest, observed: &Observed, fit: &Fit) ->
         let shown = twins.iter().take(10).map(String::as_str).collect::<Vec<_>>().join("; ");
         found.push(Notice::new(
             "rows_alike",
-            format!("Alike in all but name ({} pairs): {shown}. If one pour was entered twice, it counts double.", twins.len()),
+            format!(
+                "Alike in all but name ({} pairs): {shown}. If one pour was entered twice, it counts double.",
+                twins.len()
+            ),
         ));
     }
     found
@@ -157,7 +160,12 @@ pub fn notices(request: &CalibrationsRequest, observed: &Observed, fit: &Fit) ->
 impl<'a> CalibrationsAnswer<'a> {
     /// The answer to a request.
     #[must_use]
-    pub fn new(request: &'a CalibrationsRequest, observed: &Observed, fit: &Fit, notices: &'a [Notice]) -> Self {
+    pub fn new(
+        request: &'a CalibrationsRequest,
+        observed: &Observed,
+        fit: &Fit,
+        notices: &'a [Notice],
+    ) -> Self {
         let mut sorted: Vec<&String> = observed.digests.iter().collect();
         sorted.sort();
         let set = observed.coefficients;
@@ -218,7 +226,8 @@ impl<'a> CalibrationsAnswer<'a> {
     }
 
     fn rows(request: &'a CalibrationsRequest, observed: &Observed, fit: &Fit) -> Vec<RowAnswer<'a>> {
-        let parts = request.observations.iter().zip(&observed.rows).zip(&observed.digests).zip(&fit.standings);
+        let parts =
+            request.observations.iter().zip(&observed.rows).zip(&observed.digests).zip(&fit.standings);
         parts
             .map(|(((asked, row), digest), standing)| {
                 let (shift, _) = fit.moments.predict(&row.row(&fit.centre).covariates);

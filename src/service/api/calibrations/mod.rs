@@ -59,5 +59,6 @@ pub fn calibrate_json(bytes: &[u8]) -> Result<Vec<u8>, Problem> {
         .map_err(|fault| invalid(vec![Fault::new("/observations", "not_computable", fault.to_string())]))?;
     let notices = notices(&request, &observed, &fit);
     let answer = CalibrationsAnswer::new(&request, &observed, &fit, &notices);
-    serde_json::to_vec(&answer).map_err(|_| Problem::internal("The answer holds a number that is not finite."))
+    serde_json::to_vec(&answer)
+        .map_err(|_| Problem::internal("The answer holds a number that is not finite."))
 }

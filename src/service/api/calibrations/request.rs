@@ -184,8 +184,7 @@ impl ObservationRequest {
                     let detail = "a slowing pour dribbles below the rates at which it is clean: the clean rate must be the higher one";
                     return Err(Fault::new("/seen/bracket", "contradiction", detail));
                 }
-                let pour =
-                    Pour::Bracket { clean_at: si(clean_at_ml_s), dribbled_at: si(dribbled_at_ml_s) };
+                let pour = Pour::Bracket { clean_at: si(clean_at_ml_s), dribbled_at: si(dribbled_at_ml_s) };
                 (clean_at_ml_s, pour)
             }
             SeenRequest::Outcome(OutcomeRequest { dribbled, flow_ml_s }) => {
