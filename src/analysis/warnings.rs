@@ -11,6 +11,7 @@ use super::{
 };
 use crate::physics::{
     liquid::Property,
+    separation::closed_form::SET_1,
     stream::{Control, Flags},
 };
 
@@ -22,7 +23,16 @@ pub fn warnings(spec: &Spec, resolved: &Resolved, decision: &Decision) -> Vec<No
     stream_warnings(spec, resolved, decision, &mut found);
     liquid_warnings(spec, resolved, &mut found);
     surface_warnings(spec, resolved, &mut found);
-    if let Some(calibration) = &resolved.case.calibration {
+    let case = &resolved.case;
+    let own_offset = case.calibration.is_some_and(|c| c.knows_offset(case.coefficients));
+    if case.coefficients.id == SET_1.id && !own_offset {
+        found.push(Notice::at(
+            "coefficients_under_review",
+            "/coefficients",
+            "Flow computations under way, with streams held at rest near the threshold, put the critical Weber number above set-1 by something like 0.2 to 0.4 in ln: count a safety factor below about 1.5 as no margin.",
+        ));
+    }
+    if let Some(calibration) = &case.calibration {
         calibration_warnings(calibration, resolved, decision, &mut found);
         return found;
     }

@@ -89,6 +89,12 @@ impl Calibration {
         self.distances(&place.scales()).map(|distance| distance > SLACK)
     }
 
+    /// Whether the rows have spoken of the closed form's offset: its standard deviation is at most half the set's own uncertainty (own judgement).
+    #[must_use]
+    pub fn knows_offset(&self, set: &CoefficientSet) -> bool {
+        self.covariance.on_diagonal()[0].sqrt() <= 0.5 * set.model_uncertainty
+    }
+
     fn distances(&self, scales: &[f64; Place::COUNT]) -> [f64; Place::COUNT] {
         core::array::from_fn(|j| {
             let [low, high] = self.covered[j];
