@@ -157,8 +157,10 @@ impl Ruler {
         let mut last = decade(self.to);
         if round {
             // Up to the next 1, 2 or 5.
-            let down = |v: f64| [5.0, 2.0, 1.0].into_iter().find(|m| m * power(decade(v)) <= v * (1.0 + 1e-9));
-            let up = |v: f64| [1.0, 2.0, 5.0, 10.0].into_iter().find(|m| m * power(decade(v)) >= v * (1.0 - 1e-9));
+            let down =
+                |v: f64| [5.0, 2.0, 1.0].into_iter().find(|m| m * power(decade(v)) <= v * (1.0 + 1e-9));
+            let up =
+                |v: f64| [1.0, 2.0, 5.0, 10.0].into_iter().find(|m| m * power(decade(v)) >= v * (1.0 - 1e-9));
             self.from = down(self.from).unwrap_or(1.0) * power(first);
             self.to = up(self.to).unwrap_or(10.0) * power(last);
             (first, last) = (decade(self.from), decade(self.to));
@@ -252,7 +254,14 @@ mod tests {
 
     #[test]
     fn odd_ranges_still_make_an_axis() {
-        for values in [[0.0, 0.0], [5.0, 5.0], [f64::NAN, f64::NAN], [-1.0, f64::INFINITY], [1e300, 1.1e300], [1e-300, 1e-299]] {
+        for values in [
+            [0.0, 0.0],
+            [5.0, 5.0],
+            [f64::NAN, f64::NAN],
+            [-1.0, f64::INFINITY],
+            [1e300, 1.1e300],
+            [1e-300, 1e-299],
+        ] {
             for scale in [Scale::Linear, Scale::Log] {
                 for round in [false, true] {
                     let ruler = Ruler::over(values, scale, [10.0, 400.0], round);

@@ -82,7 +82,8 @@ pub fn curve(chart: &CurveChart<'_>) -> String {
     let heading = Heading { note: &note, ..chart.heading };
     let mut page = Page::new(WIDTH, strips + height + BELOW, &heading);
     let right = label_room(curves.iter().map(|c| c.label));
-    let xs: Vec<f64> = curves.iter().flat_map(|c| c.points.iter().map(|p| p.x)).chain(chart.asked.map(|a| a[0])).collect();
+    let xs: Vec<f64> =
+        curves.iter().flat_map(|c| c.points.iter().map(|p| p.x)).chain(chart.asked.map(|a| a[0])).collect();
     let top = page.top + strips;
     let plot = Plot::new(
         &page,
@@ -323,4 +324,3 @@ fn description(chart: &CurveChart<'_>, curves: &[Curve<'_>]) -> String {
     }
     out
 }
-

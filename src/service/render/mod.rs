@@ -4,7 +4,9 @@
 //! and half of the pictures are drawings rather than plots. The same data give the same bytes.
 
 mod axis;
+mod contour;
 mod curve;
+mod map;
 mod number;
 mod page;
 mod pen;
@@ -14,6 +16,7 @@ mod zone;
 
 pub use axis::{Axis, Scale};
 pub use curve::{Curve, CurveChart, CurvePoint, MOST_CURVES, Mark, curve};
+pub use map::{Boundary, Dark, MOST_MAP_POINTS, MapChart, map, round_levels};
 pub use page::Heading;
 
 /// The media type of the pictures.

@@ -31,7 +31,11 @@ impl Pen {
         let stroke = Some(Stroke::new(self.colour(), 1.4));
         match turn {
             0 | 1 => svg.circle([x, y], 3.4, fill, stroke),
-            2 | 3 => svg.polygon(&[[x - 3.2, y - 3.2], [x + 3.2, y - 3.2], [x + 3.2, y + 3.2], [x - 3.2, y + 3.2]], fill, stroke),
+            2 | 3 => svg.polygon(
+                &[[x - 3.2, y - 3.2], [x + 3.2, y - 3.2], [x + 3.2, y + 3.2], [x - 3.2, y + 3.2]],
+                fill,
+                stroke,
+            ),
             4 => svg.polygon(&[[x, y - 4.4], [x + 4.2, y + 3.2], [x - 4.2, y + 3.2]], fill, stroke),
             _ => svg.polygon(&[[x, y - 4.6], [x + 4.6, y], [x, y + 4.6], [x - 4.6, y]], fill, stroke),
         }

@@ -249,7 +249,8 @@ impl Svg {
             return;
         }
         let [x, y, size] = [at[0], at[1], letters.size].map(number);
-        let _ = write!(self.body, "<text x=\"{x}\" y=\"{y}\" font-size=\"{size}\" fill=\"{}\"", letters.colour);
+        let _ =
+            write!(self.body, "<text x=\"{x}\" y=\"{y}\" font-size=\"{size}\" fill=\"{}\"", letters.colour);
         match letters.anchor {
             Anchor::Start => {}
             Anchor::Middle => self.body.push_str(" text-anchor=\"middle\""),

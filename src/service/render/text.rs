@@ -106,7 +106,8 @@ mod tests {
 
     #[test]
     fn cut_text_fits() {
-        for text in ["short", "a rather long label for one curve of a chart", "ωωωωωωωωωωωωωωω", ""] {
+        for text in ["short", "a rather long label for one curve of a chart", "ωωωωωωωωωωωωωωω", ""]
+        {
             for room in [30.0, 80.0, 500.0] {
                 assert!(width(&fitted(text, 12.0, room), 12.0) <= room, "{text} {room}");
             }
