@@ -4,6 +4,7 @@
 #![allow(missing_docs, clippy::unwrap_used, clippy::expect_used, clippy::panic)]
 
 mod curves;
+mod lips;
 mod maps;
 
 use roxmltree::{Document, Node};
@@ -12,7 +13,7 @@ use roxmltree::{Document, Node};
 pub type Picture = (String, String);
 
 fn gallery() -> Vec<Picture> {
-    [curves::all(), maps::all()].concat()
+    [curves::all(), lips::all(), maps::all()].concat()
 }
 
 #[test]

@@ -62,7 +62,10 @@ fn draw(
 ) -> String {
     let (quantity, values, dark) =
         if of_chance { (CHANCE, &table.chance, Dark::High) } else { (FACTOR, &table.factor, Dark::Low) };
-    let levels = round_levels(values, quantity.scale, 9);
+    let levels =
+        if of_chance { vec![0.05, 0.25, 0.5, 0.75, 0.95] } else { round_levels(values, quantity.scale, 9) };
+    // Straighter between the points than the probability itself.
+    let odds: Vec<f64> = table.chance.iter().map(|p| (p / (1.0 - p)).ln().clamp(-40.0, 40.0)).collect();
     map(&MapChart {
         heading,
         x: axes[0],
@@ -74,16 +77,8 @@ fn draw(
         levels: &levels,
         dark,
         boundaries: &[
-            Boundary {
-                label: "dribbles inside this line (probability 0.95)",
-                values: &table.chance,
-                level: 0.95,
-            },
-            Boundary {
-                label: "clean outside this line (probability 0.05)",
-                values: &table.chance,
-                level: 0.05,
-            },
+            Boundary { label: "dribbles up to here (probability 0.95)", values: &table.chance, level: 0.95 },
+            Boundary { label: "clean from here (probability 0.05)", values: &table.chance, level: 0.05 },
         ],
         verdicts: &table.verdicts,
         asked,

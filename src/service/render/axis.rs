@@ -1,6 +1,9 @@
 //! Axes: from values to places on the sheet, with ticks at round numbers.
 
-use super::number::{decimal, raised, significant};
+use super::{
+    number::{decimal, raised, significant},
+    text,
+};
 
 /// How an axis is divided.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
@@ -110,16 +113,17 @@ impl Ruler {
         [self.from, self.to]
     }
 
-    /// Name, unit and the power of ten that the labels leave out.
-    pub(super) fn title(&self, axis: &Axis<'_>) -> String {
+    /// Name, unit and the power of ten that the labels leave out, no wider than `room`: the name is what is cut.
+    pub(super) fn title(&self, axis: &Axis<'_>, size: f64, room: f64) -> String {
         let unit = if axis.unit == "deg" { "°" } else { axis.unit };
-        let power = if self.factor == 0 { String::new() } else { format!("10{}", raised(self.factor)) };
-        match (power.is_empty(), unit.is_empty()) {
-            (true, true) => axis.name.to_owned(),
-            (true, false) => format!("{}, {unit}", axis.name),
-            (false, true) => format!("{}, in {power}", axis.name),
-            (false, false) => format!("{}, in {power} {unit}", axis.name),
-        }
+        let unit = match (self.factor, unit.is_empty()) {
+            (0, true) => String::new(),
+            (0, false) => format!(", {unit}"),
+            (power, true) => format!(", in 10{}", raised(power)),
+            (power, false) => format!(", in 10{} {unit}", raised(power)),
+        };
+        let unit = text::fitted(&unit, size, 0.5 * room);
+        text::fitted(axis.name, size, room - text::width(&unit, size)) + &unit
     }
 
     fn tick(&mut self, value: f64, label: String) {
@@ -167,7 +171,7 @@ impl Ruler {
         }
         let decades = libm::log10(self.to / self.from);
         let room = most / decades;
-        let powers = last - first > 6;
+        let powers = last - first > 6 || first < -4 || last > 5;
         let every = (1.0 / room).ceil().max(1.0) as i32;
         for exponent in first..=last {
             for mantissa in 1..10_u8 {
@@ -248,7 +252,7 @@ mod tests {
     fn large_and_small_values_leave_a_power_to_the_title() {
         let ruler = Ruler::over([0.0, 3e-7], Scale::Linear, [0.0, 300.0], false);
         let axis = Axis { name: "film", unit: "m", scale: Scale::Linear };
-        assert_eq!(ruler.title(&axis), "film, in 10⁻⁹ m");
+        assert_eq!(ruler.title(&axis, 12.0, 300.0), "film, in 10⁻⁹ m");
         assert_eq!(ruler.ticks.last().unwrap().label, "300");
     }
 

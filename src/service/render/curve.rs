@@ -144,7 +144,9 @@ fn vertical_extent(chart: &CurveChart<'_>, curves: &[Curve<'_>]) -> [[f64; 2]; 2
         values.filter(usable).fold([f64::INFINITY, f64::NEG_INFINITY], |[a, b], v| [a.min(v), b.max(v)])
     };
     let points = || curves.iter().flat_map(|c| c.points.iter()).filter(|p| usable(&p.y));
-    let others = chart.levels.iter().map(|m| m.at).chain(chart.asked.map(|a| a[1]));
+    // A level stands a little inside the frame.
+    let beside = |m: &Mark<'_>| if log { [m.at / 1.3, m.at * 1.3] } else { [m.at; 2] };
+    let others = chart.levels.iter().flat_map(beside).chain(chart.asked.map(|a| a[1]));
     let [low, high] = span(&mut points().map(|p| p.y).chain(others));
     let [lowest, highest] = span(&mut points().flat_map(|p| [p.low, p.high]));
     if low > high {
@@ -161,15 +163,12 @@ fn vertical_extent(chart: &CurveChart<'_>, curves: &[Curve<'_>]) -> [[f64; 2]; 2
 }
 
 fn note(chart: &CurveChart<'_>, cut: bool) -> String {
-    let mut note = chart.heading.note.to_owned();
-    if cut {
-        note.push_str(" Intervals go on beyond the frame.");
-    }
+    let mut parts = vec![chart.heading.note.to_owned()];
+    parts.extend(cut.then(|| "intervals go on beyond the frame".to_owned()));
     let beyond = chart.curves.len().saturating_sub(MOST_CURVES);
-    if beyond > 0 {
-        note.push_str(&format!(" {beyond} more curves are not drawn."));
-    }
-    note
+    parts.extend((beyond > 0).then(|| format!("{beyond} more curves are not drawn")));
+    parts.retain(|part| !part.is_empty());
+    parts.join(" · ")
 }
 
 fn curve_stretches(plot: &Plot, curve: &Curve<'_>) -> Vec<Stretch> {

@@ -65,6 +65,8 @@ pub const MOST_MAP_POINTS: usize = 40_000;
 
 const WIDTH: f64 = 820.0;
 const HEIGHT: f64 = 440.0;
+/// Size of the zones' names.
+const NAME: f64 = 15.0;
 /// Room right of the map for the key.
 const KEY: f64 = 196.0;
 const BOUNDARY_DASHES: [&str; 4] = ["", "11 4", "3 3", "12 3 3 3"];
@@ -91,8 +93,7 @@ pub fn map(chart: &MapChart<'_>) -> String {
     if let Some(at) = asked_place(chart, &plot) {
         taken.push([at[0] - 14.0, at[1] - 14.0, at[0] + 14.0, at[1] + 14.0]);
     }
-    let names = zone_names(chart, &plot);
-    taken.extend(names.iter().map(|name| around(name.0, name.1, 15.0)));
+    let names = zone_names(chart, &plot, &mut taken);
     for (level, label) in levels.iter().zip(&key_labels) {
         let lines = grid.lines(*level);
         lines.iter().for_each(|line| svg.polyline(line, Stroke::new("#3a3a3a", 0.9)));
@@ -106,7 +107,7 @@ pub fn map(chart: &MapChart<'_>) -> String {
         }
     }
     for (at, name) in &names {
-        svg.text([at[0], at[1] + 5.0], name, Letters::new(15.0).bold().middle().halo());
+        svg.text([at[0], at[1] + 5.0], name, Letters::new(NAME).bold().middle().halo());
     }
     if grid.values.iter().all(|v| !v.is_finite()) {
         let middle = [0.5 * (plot.left() + plot.right()), 0.5 * (plot.top() + plot.bottom())];
@@ -253,7 +254,7 @@ fn line_label(svg: &mut Svg, plot: &Plot, lines: &[Vec<[f64; 2]>], label: &str, 
 }
 
 /// The name of each zone at its widest place.
-fn zone_names(chart: &MapChart<'_>, plot: &Plot) -> Vec<([f64; 2], &'static str)> {
+fn zone_names(chart: &MapChart<'_>, plot: &Plot, taken: &mut Vec<[f64; 4]>) -> Vec<([f64; 2], &'static str)> {
     let (width, height) = (chart.xs.len(), chart.ys.len());
     if chart.verdicts.len() != width * height || width == 0 {
         return Vec::new();
@@ -273,14 +274,26 @@ fn zone_names(chart: &MapChart<'_>, plot: &Plot) -> Vec<([f64; 2], &'static str)
             plot,
             chart.asked.and_then(|_| asked_place(chart, plot)),
         );
-        let best = (0..places.len()).max_by(|a, b| clear[*a].total_cmp(&clear[*b]));
-        let Some(best) = best.filter(|best| clear[*best] > 12.0) else { continue };
-        let half = 0.5 * text::bold_width(name, 15.0) + 6.0;
-        let lowest = (plot.left() + half).min(plot.right() - half);
-        names.push((
-            [places[best][0].clamp(lowest, (plot.right() - half).max(lowest)), places[best][1]],
-            name,
-        ));
+        let mut order: Vec<usize> = (0..places.len()).filter(|i| clear[*i] > 12.0).collect();
+        order.sort_by(|a, b| clear[*b].total_cmp(&clear[*a]));
+        // Moved in from the frame; the first place that overlaps nothing.
+        let half = 0.5 * text::bold_width(name, NAME) + 6.0;
+        let within = |at: f64, low: f64, high: f64| at.min(high).max(low);
+        let moved = |i: &usize| {
+            let [x, y] = places[*i];
+            [
+                within(x, plot.left() + half, plot.right() - half),
+                within(y, plot.top() + 14.0, plot.bottom() - 14.0),
+            ]
+        };
+        let free = |at: &[f64; 2]| {
+            let here = around(*at, name, NAME);
+            !taken.iter().any(|other| overlaps(other, &here))
+        };
+        if let Some(at) = order.iter().map(moved).find(free) {
+            taken.push(around(at, name, NAME));
+            names.push((at, name));
+        }
     }
     names
 }
@@ -356,6 +369,21 @@ fn key(svg: &mut Svg, plot: &Plot, chart: &MapChart<'_>, labels: &[String], miss
         svg.line([left + 26.0, at], [left + 30.0, at], Stroke::new(INK, 0.7));
         svg.text([left + 34.0, at + 4.0], label, Letters::new(11.0));
     }
+    if labels.is_empty() {
+        // No line: one value, or so little between them that none is round.
+        let [low, high] = known_range(chart);
+        let unit = chart.quantity.unit;
+        let words = match (low <= high, low < high) {
+            (false, _) => "none",
+            (true, false) => &with_unit(low, unit),
+            (true, true) => &format!("{} to {}", significant(low, 4), with_unit(high, unit)),
+        };
+        svg.text(
+            [left + 34.0, y + 0.5 * height + 4.0],
+            &text::fitted(words, 11.0, room - 34.0),
+            Letters::new(11.0),
+        );
+    }
     y += height * steps as f64 + 24.0;
     for (index, boundary) in chart.boundaries.iter().enumerate() {
         svg.line([left, y], [left + 40.0, y], boundary_stroke(index));
@@ -381,14 +409,17 @@ fn key(svg: &mut Svg, plot: &Plot, chart: &MapChart<'_>, labels: &[String], miss
     }
 }
 
+fn known_range(chart: &MapChart<'_>) -> [f64; 2] {
+    let known = chart.values.iter().copied().filter(|v| v.is_finite());
+    known.fold([f64::INFINITY, f64::NEG_INFINITY], |[low, high], v| [low.min(v), high.max(v)])
+}
+
 fn description(chart: &MapChart<'_>) -> String {
     let ends = |values: &[f64], unit: &str| {
         let [first, last] = [values.first(), values.last()].map(|v| v.copied().unwrap_or(f64::NAN));
         format!("{} to {}", significant(first, 3), with_unit(last, unit))
     };
-    let known = || chart.values.iter().copied().filter(|v| v.is_finite());
-    let low = known().fold(f64::INFINITY, f64::min);
-    let high = known().fold(f64::NEG_INFINITY, f64::max);
+    let [low, high] = known_range(chart);
     let mut out = format!(
         "Map of {} over {} ({}) and {} ({}).",
         chart.quantity.name,

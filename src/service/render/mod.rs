@@ -6,6 +6,7 @@
 mod axis;
 mod contour;
 mod curve;
+mod lip;
 mod map;
 mod number;
 mod page;
@@ -16,6 +17,7 @@ mod zone;
 
 pub use axis::{Axis, Scale};
 pub use curve::{Curve, CurveChart, CurvePoint, MOST_CURVES, Mark, curve};
+pub use lip::{Between, LipPicture, lip};
 pub use map::{Boundary, Dark, MOST_MAP_POINTS, MapChart, map, round_levels};
 pub use page::Heading;
 

@@ -155,14 +155,11 @@ impl Plot {
         }
         let [width, height] = self.size();
         if let Some(axis) = x {
-            let title = text::fitted(&self.x.title(axis), SIZE, width.max(200.0));
+            let title = self.x.title(axis, SIZE, width.max(200.0));
             svg.text([self.left() + 0.5 * width, self.bottom() + 35.0], &title, PLAIN.middle());
         }
-        let lines = text::wrapped(&self.y.title(y), SIZE, height, 1);
-        for line in &lines {
-            let at = [MARGIN + 10.0, self.top() + 0.5 * height];
-            svg.text(at, line, PLAIN.middle().upwards());
-        }
+        let title = self.y.title(y, SIZE, height);
+        svg.text([MARGIN + 10.0, self.top() + 0.5 * height], &title, PLAIN.middle().upwards());
     }
 
     /// A cross in a ring: the point that was asked about.
