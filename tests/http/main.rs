@@ -10,6 +10,7 @@ mod contract;
 mod cross_origin;
 mod evaluations;
 mod lookups;
+mod pictures;
 mod problems;
 mod properties;
 mod server;

@@ -6,6 +6,7 @@
 mod curves;
 mod lips;
 mod maps;
+mod others;
 
 use roxmltree::{Document, Node};
 
@@ -13,7 +14,7 @@ use roxmltree::{Document, Node};
 pub type Picture = (String, String);
 
 fn gallery() -> Vec<Picture> {
-    [curves::all(), lips::all(), maps::all()].concat()
+    [curves::all(), lips::all(), maps::all(), others::all()].concat()
 }
 
 #[test]

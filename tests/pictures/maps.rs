@@ -77,8 +77,8 @@ fn draw(
         levels: &levels,
         dark,
         boundaries: &[
-            Boundary { label: "dribbles up to here (probability 0.95)", values: &table.chance, level: 0.95 },
-            Boundary { label: "clean from here (probability 0.05)", values: &table.chance, level: 0.05 },
+            Boundary { label: "dribbles up to here (probability 0.95)", values: &odds, level: 19_f64.ln() },
+            Boundary { label: "clean from here (probability 0.05)", values: &odds, level: -(19_f64.ln()) },
         ],
         verdicts: &table.verdicts,
         asked,

@@ -296,17 +296,15 @@ fn description(chart: &CurveChart<'_>, curves: &[Curve<'_>]) -> String {
         }
         let known: Vec<&CurvePoint> = curve.points.iter().filter(|p| p.y.is_finite()).collect();
         if let (Some(first), Some(last)) = (known.first(), known.last()) {
-            out.push_str(&format!(
-                " from {} ({} to {}) at {} to {} ({} to {}) at {}.",
-                significant(first.y, 3),
-                significant(first.low, 3),
-                significant(first.high, 3),
-                with_unit(first.x, chart.x.unit),
-                significant(last.y, 3),
-                significant(last.low, 3),
-                significant(last.high, 3),
-                with_unit(last.x, chart.x.unit)
-            ));
+            let [first, last] = [first, last].map(|p| {
+                let interval = if p.low.is_finite() && p.high.is_finite() {
+                    format!(" ({} to {})", significant(p.low, 3), significant(p.high, 3))
+                } else {
+                    String::new()
+                };
+                format!("{}{interval} at {}", significant(p.y, 3), with_unit(p.x, chart.x.unit))
+            });
+            out.push_str(&format!(" from {first} to {last}."));
         } else {
             out.push_str(" no point has an answer.");
         }

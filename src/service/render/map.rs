@@ -94,17 +94,17 @@ pub fn map(chart: &MapChart<'_>) -> String {
         taken.push([at[0] - 14.0, at[1] - 14.0, at[0] + 14.0, at[1] + 14.0]);
     }
     let names = zone_names(chart, &plot, &mut taken);
-    for (level, label) in levels.iter().zip(&key_labels) {
-        let lines = grid.lines(*level);
-        lines.iter().for_each(|line| svg.polyline(line, Stroke::new("#3a3a3a", 0.9)));
-        line_label(svg, &plot, &lines, label, &mut taken);
-    }
+    let lines: Vec<_> = levels.iter().map(|level| grid.lines(*level)).collect();
+    lines.iter().flatten().for_each(|line| svg.polyline(line, Stroke::new("#3a3a3a", 0.9)));
     for (index, boundary) in chart.boundaries.iter().enumerate() {
         let grid = laid(chart, &plot, boundary.values, Scale::Linear);
         for line in grid.lines(boundary.level) {
             svg.polyline(&line, Stroke::new("#fff", 5.0));
             svg.polyline(&line, boundary_stroke(index));
         }
+    }
+    for (lines, label) in lines.iter().zip(&key_labels) {
+        line_label(svg, &plot, lines, label, &mut taken);
     }
     for (at, name) in &names {
         svg.text([at[0], at[1] + 5.0], name, Letters::new(NAME).bold().middle().halo());
@@ -191,7 +191,10 @@ fn laid(chart: &MapChart<'_>, plot: &Plot, values: &[f64], scale: Scale) -> Grid
 
 /// The grey of a step: from nearly white to a grey that black letters can still be read on.
 fn grey(index: usize, count: usize, dark: Dark) -> u8 {
-    let share = if count < 2 { 0.0 } else { index as f64 / (count - 1) as f64 };
+    if count < 2 {
+        return 240;
+    }
+    let share = index as f64 / (count - 1) as f64;
     let darkness = match dark {
         Dark::High => share,
         Dark::Low => 1.0 - share,

@@ -1,7 +1,7 @@
 //! Numbers as they are printed in pictures.
 
 /// A number to `digits` significant digits, without trailing zeros: `0.031`, `1.2`, `24 000`, `3.1 × 10⁻⁷`.
-pub(super) fn significant(value: f64, digits: i32) -> String {
+pub(in crate::service) fn significant(value: f64, digits: i32) -> String {
     if value == 0.0 {
         return "0".to_owned();
     }
@@ -60,7 +60,7 @@ pub(super) fn raised(exponent: i32) -> String {
 }
 
 /// A number with its unit.
-pub(super) fn with_unit(value: f64, unit: &str) -> String {
+pub(in crate::service) fn with_unit(value: f64, unit: &str) -> String {
     let number = significant(value, 3);
     match unit {
         "" => number,
@@ -70,7 +70,7 @@ pub(super) fn with_unit(value: f64, unit: &str) -> String {
 }
 
 /// A share as a percentage; never a bare 0 % or 100 % for what is neither.
-pub(super) fn percent(share: f64) -> String {
+pub(in crate::service) fn percent(share: f64) -> String {
     let hundred = 100.0 * share;
     if hundred > 0.0 && hundred < 0.1 {
         "under 0.1 %".to_owned()

@@ -246,7 +246,7 @@ fn labels(svg: &mut Svg, view: &View, outline: &Outline, picture: &LipPicture<'_
             (at, right, "clings, runs down the wall")
         } else {
             let [x, y] = outline.drip();
-            ([x + 22.0 / view.scale, y - 30.0 / view.scale], true, "clings, drips from the underside")
+            ([x + 36.0 / view.scale, y - 40.0 / view.scale], true, "clings, drips from the underside")
         };
         let [x, y] = view.at(at);
         let half = 0.5 * text::bold_width(words, SMALL.size);
@@ -313,7 +313,7 @@ fn scale_bar(svg: &mut Svg, view: &View, y: f64, thin: bool) {
     let words = if thin {
         "To scale but for the film, too thin to see. Hatched: solid, broken off at the waved line."
     } else {
-        "To scale. Hatched: solid, broken off at the waved line; how thick it is has no part in this."
+        "To scale. Hatched: solid, broken off at the waved line."
     };
     let left = right + 0.5 * text::width(&with_unit(length, "mm"), SMALL.size) + 12.0;
     for (index, words) in text::wrapped(words, 10.0, MARGIN + DRAWING - left, 2).iter().enumerate() {
