@@ -8,7 +8,7 @@ use http::StatusCode;
 use serde_json::{Value, json};
 
 use crate::{
-    ask::{post_json, service, state},
+    ask::{call, post_json, service, state},
     evaluations::request,
 };
 
@@ -373,6 +373,25 @@ async fn a_prior_of_the_callers_own() {
     assert!(number(&answer["coefficients"][0]["mean"]) > 0.8);
     assert_eq!(answer["coefficients"][1]["prior_standard_deviation"], 0.3);
     assert_eq!(answer["calibration"]["prior"]["offset"]["mean"].as_f64(), Some(1.0));
+}
+
+#[tokio::test]
+async fn the_picture_shows_curve_and_rows() {
+    let service = service(&state(|_| {}));
+    let headers = [("content-type", "application/json"), ("accept", "image/svg+xml")];
+    let answer = call(&service, "POST", PATH, &headers, EXAMPLE.into()).await;
+    assert_eq!(answer.status, StatusCode::OK, "{:?}", answer.body);
+    assert_eq!(answer.header("content-type"), "image/svg+xml");
+    let text = String::from_utf8(answer.body.to_vec()).unwrap();
+    let document = roxmltree::Document::parse(&text).unwrap();
+    let words: String = document.descendants().filter_map(|node| node.text()).collect();
+    assert!(
+        words.contains("18 bench rows") && words.contains("2 pours clean, 4 dribbled, 12 onsets"),
+        "{words}"
+    );
+    assert!(!text.contains("NaN") && !text.contains("inf"));
+    let refused = call(&service, "POST", PATH, &[headers[0], ("accept", "text/csv")], EXAMPLE.into()).await;
+    assert_eq!(refused.status, StatusCode::NOT_ACCEPTABLE);
 }
 
 #[tokio::test]

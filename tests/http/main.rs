@@ -11,6 +11,7 @@ mod contract;
 mod cross_origin;
 mod evaluations;
 mod lookups;
+mod pictures;
 mod problems;
 mod properties;
 mod readme;
