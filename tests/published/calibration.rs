@@ -3,6 +3,9 @@
 //! Left out of the reference's list: the logit fit (not this model); leave-one-out by exact refits of the joint mode, and the second half fitted on the first half's joint
 //! mode (the fitter has no joint mode).
 
+// Helpers outside the tests proper may fail a test as the tests do.
+#![allow(clippy::unwrap_used, clippy::panic)]
+
 use dribble_risk::analysis::calibration::{
     GridPoint, Mixture, Mode, Prior, Row, Seen, Symmetric, condition_number, misfit, mode_at, posterior,
     separable, standings,

@@ -87,10 +87,9 @@ impl Symmetric {
                     let (x, y) = (row[p], row[q]);
                     (row[p], row[q]) = (cosine * x - sine * y, sine * x + cosine * y);
                 }
-                for k in 0..3 {
-                    let (x, y) = (m[p][k], m[q][k]);
-                    (m[p][k], m[q][k]) = (cosine * x - sine * y, sine * x + cosine * y);
-                }
+                let (x, y) = (m[p], m[q]);
+                m[p] = core::array::from_fn(|k| cosine * x[k] - sine * y[k]);
+                m[q] = core::array::from_fn(|k| sine * x[k] + cosine * y[k]);
             }
         }
         let mut values = [m[0][0], m[1][1], m[2][2]];

@@ -207,7 +207,7 @@ impl ObservationRequest {
             confidence: Confidence::known(0.95),
             include: Vec::new(),
             limits: BTreeMap::new(),
-            lip: self.lip.clone(),
+            lip: self.lip,
             liquid: self.liquid.clone(),
             method: MethodRequest::default(),
             outer_face: self.outer_face,
