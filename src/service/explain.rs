@@ -25,6 +25,11 @@ pub trait Request: DeserializeOwned + ToSchema {
     /// What is wrong with a request that has the right form.
     fn faults(&self) -> Vec<Fault>;
 
+    /// Members that a fault of this code rests on besides its own: it is not told while one of them is a stand-in.
+    fn rests_on(_code: &str) -> &'static [&'static str] {
+        &[]
+    }
+
     /// Where the schema of this request is kept once it has been written.
     fn contract() -> &'static OnceLock<Contract>;
 }
@@ -139,7 +144,10 @@ fn faults_elsewhere<T: Request>(document: &Value, known: &[Fault]) -> Vec<Fault>
     let Ok(request) = serde_json::from_value::<T>(Value::Object(filled)) else { return Vec::new() };
     let mut found = request.faults();
     // A verdict on two parts together means nothing when one of them is a stand-in.
-    found.retain(|fault| !broken.speaks_of(&fault.pointer) && fault.code != "not_applicable");
+    found.retain(|fault| {
+        let stands = !T::rests_on(fault.code).iter().any(|part| broken.within(&format!("/{part}")));
+        stands && !broken.speaks_of(&fault.pointer) && fault.code != "not_applicable"
+    });
     found
 }
 

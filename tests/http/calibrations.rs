@@ -376,6 +376,60 @@ async fn a_prior_of_the_callers_own() {
 }
 
 #[tokio::test]
+async fn taken_back_wherever_a_verdict_is_given() {
+    let service = service(&state(|_| {}));
+    let mut base = covered();
+    base["calibration"] = example_calibration().clone();
+    let evaluated = ok(&service, "/v1/evaluations", &base).await;
+    // A sweep says of a point what an evaluation says of it.
+    let mut sweep = json!({
+        "base": base,
+        "axes": [{"pointer": "/lip/edge/rounded/radius_mm", "values": [0.5, 0.7, 3]}],
+        "outputs": ["safety_factor", "dribble_probability", "critical_weber", "onset_flow_ml_s"]
+    });
+    let swept = ok(&service, "/v1/sweeps", &sweep).await;
+    for (column, pointer) in [
+        ("safety_factor", "/safety_factor/value"),
+        ("dribble_probability", "/dribble_probability"),
+        ("critical_weber", "/threshold/critical_weber"),
+        ("onset_flow_ml_s", "/threshold/onset_flow_ml_s"),
+    ] {
+        let (there, here) =
+            (number(&swept["columns"][column][1]), number(evaluated.pointer(pointer).unwrap()));
+        assert!((there / here - 1.0).abs() < 1e-9, "{column}: {there} {here}");
+    }
+    sweep["base"]["calibration"]["digest"] = json!("none");
+    let pointer = pairs(&[("/base/calibration/digest", "corrupted")]);
+    assert_eq!(faults(&service, "/v1/sweeps", &sweep).await, pointer);
+    // A design: a calibration that knows the scatter allows a blunter edge than the closed form's own doubt.
+    let design = |calibration: Option<&Value>| {
+        let mut base = covered();
+        if let Some(calibration) = calibration {
+            base["calibration"] = calibration.clone();
+        }
+        base["pour"]["flow_ml_s"] = json!(16);
+        json!({
+            "base": base,
+            "vary": {"pointer": "/lip/edge/rounded/radius_mm", "between": [0.2, 3]},
+            "cases": [{"name": "as poured"}]
+        })
+    };
+    let with = ok(&service, "/v1/designs", &design(Some(example_calibration()))).await;
+    let without = ok(&service, "/v1/designs", &design(None)).await;
+    let limit = number(&with["limit"]["value"]);
+    assert!(without["limit"].is_null() || limit > number(&without["limit"]["value"]), "{with} {without}");
+    // A pour.
+    let mut pour: Value = serde_json::from_str(dribble_risk::service::api::pours::EXAMPLE).unwrap();
+    let plain = ok(&service, "/v1/pours", &pour).await;
+    pour["calibration"] = example_calibration().clone();
+    let answer = ok(&service, "/v1/pours", &pour).await;
+    assert!(codes(&answer).contains(&"calibrated_by_caller"), "{:?}", codes(&answer));
+    assert_ne!(answer["dribbled_ml"], plain["dribbled_ml"]);
+    pour["calibration"]["rows_digest"] = json!("");
+    assert_eq!(faults(&service, "/v1/pours", &pour).await, pairs(&[("/calibration/digest", "corrupted")]));
+}
+
+#[tokio::test]
 async fn the_picture_shows_curve_and_rows() {
     let service = service(&state(|_| {}));
     let headers = [("content-type", "application/json"), ("accept", "image/svg+xml")];

@@ -32,8 +32,8 @@ fn words(svg: &str) -> String {
 /// A number to three significant digits, as plain pictures write it.
 fn three(value: &Value) -> String {
     let value = value.as_f64().unwrap();
-    let exponent = value.abs().log10().floor();
-    let unit = 10_f64.powf(exponent - 2.0);
+    let exponent = libm::log10(value.abs()).floor();
+    let unit = libm::exp10(exponent - 2.0);
     format!("{}", ((value / unit).round() * unit * 1e6).round() / 1e6)
 }
 
@@ -118,7 +118,7 @@ async fn every_section_and_kind_of_surface_and_liquid_can_be_drawn() {
     other["liquid"] =
         json!({"measured": {"density_kg_m3": 1030, "viscosity_mpa_s": 2.1, "surface_tension_mn_m": 46}});
     let words = words(&drawn(&service, &other).await);
-    assert!(words.contains("A measured liquid on") && words.contains("(in use)"), "{words}");
+    assert!(words.contains("Measured liquid · ") && words.contains("(in use)"), "{words}");
 }
 
 #[tokio::test]

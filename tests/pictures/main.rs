@@ -1,12 +1,13 @@
 //! Every kind of picture, at ordinary and at extreme inputs: well-formed, described, nothing of it outside the sheet, the same bytes each time.
 //!
 //! To look at them: `DRIBBLE_RISK_GALLERY=<folder> cargo test --test pictures` writes them there.
-#![allow(missing_docs, clippy::unwrap_used, clippy::expect_used, clippy::panic)]
+#![allow(missing_docs, clippy::unwrap_used, clippy::expect_used, clippy::panic, clippy::disallowed_methods)]
 
 mod curves;
 mod lips;
 mod maps;
 mod others;
+mod sweeps;
 
 use roxmltree::{Document, Node};
 
@@ -14,7 +15,7 @@ use roxmltree::{Document, Node};
 pub type Picture = (String, String);
 
 fn gallery() -> Vec<Picture> {
-    [curves::all(), lips::all(), maps::all(), others::all()].concat()
+    [curves::all(), lips::all(), maps::all(), others::all(), sweeps::all()].concat()
 }
 
 #[test]

@@ -143,30 +143,26 @@ fn probabilities() -> Vec<(&'static str, String)> {
         })
         .collect();
     let mut seen = vec![
-        Seen::Onset { at: 2.3, standard_uncertainty: 0.1, name: "jug A" },
-        Seen::Bracket { dribbled: 2.0, clean: 2.4, name: "jug B" },
-        Seen::Bracket { dribbled: 1.7, clean: 2.6, name: "jug C" },
+        Seen::Onset { at: 2.3, standard_uncertainty: 0.1 },
+        Seen::Bracket { dribbled: 2.0, clean: 2.4 },
+        Seen::Bracket { dribbled: 1.7, clean: 2.6 },
     ];
     for i in 0..24 {
         let x = 0.8 + f64::from(i) * 0.13;
         seen.push(if x > 2.3 { Seen::Clean(x) } else { Seen::Dribbled(x) });
     }
-    let draw = |title,
-                points: &[[f64; 4]],
-                marked: &[(f64, f64, &str)],
-                limits: &[Mark<'_>],
-                seen: &[Seen<'_>],
-                x| {
-        probability(&ProbabilityChart {
-            heading: heading(title),
-            x,
-            of: "probability",
-            points,
-            marked,
-            limits,
-            seen,
-        })
-    };
+    let draw =
+        |title, points: &[[f64; 4]], marked: &[(f64, f64, &str)], limits: &[Mark<'_>], seen: &[Seen], x| {
+            probability(&ProbabilityChart {
+                heading: heading(title),
+                x,
+                of: "probability",
+                points,
+                marked,
+                limits,
+                seen,
+            })
+        };
     let fraction = linear("fraction nonconforming", "");
     let weber = linear("ln of the Weber number", "");
     vec![

@@ -6,4 +6,6 @@ mod calibration;
 mod facts;
 mod hydraulics;
 mod liquids;
+mod pour;
+mod vessel;
 mod wetting;

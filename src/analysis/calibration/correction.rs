@@ -130,8 +130,10 @@ impl Calibration {
         // ∂ ln E/∂θ = −sin θ/(1 + cos θ); where E vanishes the covariate has long stopped.
         let (sin, cos) = libm::sincos(place.contact_angle);
         let by_angle = if wetting.slope > 0.0 { -sin / (1.0 + cos) * wetting.slope } else { 0.0 };
+        let shift = b0 + b1 * radius.value + b2 * wetting.value;
         Threshold {
-            ln_critical_weber: threshold.ln_critical_weber + b0 + b1 * radius.value + b2 * wetting.value,
+            critical_weber: threshold.critical_weber * libm::exp(shift),
+            ln_critical_weber: threshold.ln_critical_weber + shift,
             by_ln_radius_ratio: threshold.by_ln_radius_ratio + b1 * radius.slope,
             by_contact_angle: threshold.by_contact_angle + b2 * by_angle,
             ..*threshold

@@ -87,7 +87,7 @@ impl Mixture {
     #[must_use]
     pub fn clean_share_interval(&self, x: &Vector, excess: f64, level: f64) -> (f64, f64) {
         // The normal distribution of xᵀb at each ln s by equal shares of it.
-        const SHARES: usize = 40;
+        const SHARES: usize = 160;
         let mut shares = Vec::with_capacity(self.grid.len() * SHARES);
         for point in &self.grid {
             let (mean, sd) = (dot(x, &point.mean), point.covariance.form(x).max(0.0).sqrt());

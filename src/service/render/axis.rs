@@ -144,10 +144,11 @@ impl Ruler {
             self.factor = 3 * exponent.div_euclid(3);
         }
         let unit = libm::exp10(f64::from(self.factor));
-        let decimals = usize::try_from(-decade(step / unit * (1.0 + 1e-9))).unwrap_or(0).min(12);
+        let shown = step / unit * (1.0 + 1e-9);
+        let mantissa = shown / power(decade(shown));
         // A step of 2.5 needs one decimal more than its decade says.
-        let mantissa = step / libm::exp10(f64::from(decade(step * (1.0 + 1e-9))));
-        let decimals = decimals + usize::from((mantissa - 2.5).abs() < 1e-6);
+        let more = i32::from((mantissa - 2.5).abs() < 1e-6);
+        let decimals = usize::try_from(more - decade(shown)).unwrap_or(0).min(12);
         let first = (self.from / step - 1e-9).ceil();
         let count = ((self.to / step + 1e-9).floor() - first).clamp(0.0, 200.0) as usize;
         for index in 0..=count {
@@ -238,6 +239,7 @@ mod tests {
         for (values, scale, room, expected) in [
             ([0.0, 1.0], Scale::Linear, 400.0, "0.0 0.2 0.4 0.6 0.8 1.0"),
             ([0.0, 10.0], Scale::Linear, 300.0, "0.0 2.5 5.0 7.5 10.0"),
+            ([0.0, 100.0], Scale::Linear, 300.0, "0 25 50 75 100"),
             ([-3.0, 3.0], Scale::Linear, 400.0, "−3 −2 −1 0 1 2 3"),
             ([0.1, 10.0], Scale::Log, 500.0, "0.1 0.2 0.5 1 2 5 10"),
             ([1e-3, 1e3], Scale::Log, 500.0, "0.001 0.01 0.1 1 10 100 1000"),

@@ -130,7 +130,7 @@ pub fn curve(chart: &CurveChart<'_>) -> String {
         asked(svg, &plot, [at.0, at.1], chart);
     }
     if curves.iter().all(|c| c.points.iter().all(|p| !p.y.is_finite())) {
-        let middle = [0.5 * (plot.left() + plot.right()), 0.5 * (plot.top() + plot.bottom())];
+        let middle = [0.5 * (plot.left() + plot.right()), 0.75 * plot.top() + 0.25 * plot.bottom()];
         svg.text(middle, "no point of this range has an answer", Letters::new(SIZE).middle().halo());
     }
     page.svg.finish(chart.heading.title, &description(chart, curves))

@@ -58,12 +58,13 @@ const LABELS: f64 = 44.0;
 /// Draws the histogram.
 #[must_use]
 pub fn histogram(chart: &Histogram<'_>) -> String {
-    let mut page = Page::new(WIDTH, LABELS + HEIGHT + BELOW, &chart.heading);
+    let labels = if chart.limit.is_none() && chart.marks.is_empty() { 4.0 } else { LABELS };
+    let mut page = Page::new(WIDTH, labels + HEIGHT + BELOW, &chart.heading);
     let limits = chart.limit.iter().flat_map(|l| [Some(l.at), l.guarded]).flatten();
     let values: Vec<f64> =
         chart.edges.iter().copied().chain(limits).chain(chart.marks.iter().map(|m| m.at)).collect();
     let most = chart.counts.iter().copied().filter(|c| c.is_finite()).fold(0.0, f64::max);
-    let top = page.top + LABELS;
+    let top = page.top + labels;
     let axis = Axis { scale: Scale::Linear, ..chart.axis };
     let counts = bare(chart.count_name);
     let plot = Plot::new(
@@ -81,12 +82,9 @@ pub fn histogram(chart: &Histogram<'_>) -> String {
     for (edges, count) in chart.edges.windows(2).zip(chart.counts) {
         let corners = plot.at(edges[0], *count).zip(plot.at(edges[1], 0.0));
         if let Some(([left, top], [right, bottom])) = corners.filter(|_| *count > 0.0) {
-            svg.rect(
-                [left, top],
-                [right - left, bottom - top],
-                Fill::Grey(0xb4),
-                Some(Stroke::new(INK, 0.8)),
-            );
+            // A class of no width is drawn as a line.
+            let size = [(right - left).max(2.0), bottom - top];
+            svg.rect([left, top], size, Fill::Grey(0xb4), Some(Stroke::new(INK, 0.8)));
         }
     }
     if let Some(limit) = &chart.limit {
@@ -130,8 +128,9 @@ fn lines(svg: &mut Svg, plot: &Plot, chart: &Histogram<'_>) {
     let mut found: Vec<(f64, String, Stroke)> = Vec::new();
     let mut add = |value: f64, label: &str, stroke: Stroke| {
         if let Some(place) = plot.x.inside(value) {
-            let words = format!("{label} {}", with_unit(value, unit));
-            found.push((place, text::fitted(words.trim(), 11.0, 250.0), stroke));
+            let number = with_unit(value, unit);
+            let label = text::fitted(label, 11.0, 250.0 - text::width(&number, 11.0));
+            found.push((place, format!("{label} {number}"), stroke));
         }
     };
     if let Some(limit) = &chart.limit {
@@ -146,6 +145,7 @@ fn lines(svg: &mut Svg, plot: &Plot, chart: &Histogram<'_>) {
     found.sort_by(|a, b| a.0.total_cmp(&b.0));
     // Three rows in turn, so that neighbours do not overlap.
     let mut free = [f64::NEG_INFINITY; 3];
+    let mut placed = Vec::with_capacity(found.len());
     for (place, words, stroke) in &found {
         let half = 0.5 * text::width(words, 11.0);
         let middle =
@@ -154,7 +154,10 @@ fn lines(svg: &mut Svg, plot: &Plot, chart: &Histogram<'_>) {
         free[row] = middle + half + 10.0;
         let y = plot.top() - 8.0 - 14.0 * row as f64;
         svg.line([*place, y + 3.0], [*place, plot.bottom()], *stroke);
-        svg.text([middle, y], words, Letters::new(11.0).middle().halo());
+        placed.push(([middle, y], words));
+    }
+    for (at, words) in placed {
+        svg.text(at, words, Letters::new(11.0).middle().halo());
     }
 }
 

@@ -25,12 +25,12 @@ pub struct ProbabilityChart<'a> {
     /// Values of the quantity that mean something.
     pub limits: &'a [Mark<'a>],
     /// What the bench saw.
-    pub seen: &'a [Seen<'a>],
+    pub seen: &'a [Seen],
 }
 
 /// A row of bench data.
 #[derive(Debug, Clone, Copy, PartialEq)]
-pub enum Seen<'a> {
+pub enum Seen {
     /// One pour that stayed clean, at this value.
     Clean(f64),
     /// One pour that dribbled.
@@ -41,8 +41,6 @@ pub enum Seen<'a> {
         dribbled: f64,
         /// Clean here.
         clean: f64,
-        /// Name of the row; may be empty.
-        name: &'a str,
     },
     /// Onset read off directly, give or take.
     Onset {
@@ -50,8 +48,6 @@ pub enum Seen<'a> {
         at: f64,
         /// Its standard uncertainty.
         standard_uncertainty: f64,
-        /// Name of the row; may be empty.
-        name: &'a str,
     },
 }
 
@@ -65,10 +61,10 @@ const STRIP: f64 = 26.0;
 pub fn probability(chart: &ProbabilityChart<'_>) -> String {
     let key = if chart.seen.is_empty() { 0.0 } else { 22.0 };
     let mut page = Page::new(WIDTH, key + HEIGHT + BELOW, &chart.heading);
-    let ends = |seen: &Seen<'_>| match *seen {
+    let ends = |seen: &Seen| match *seen {
         Seen::Clean(at) | Seen::Dribbled(at) => [at; 2],
-        Seen::Bracket { dribbled, clean, .. } => [dribbled, clean],
-        Seen::Onset { at, standard_uncertainty: u, .. } => [at - 2.0 * u, at + 2.0 * u],
+        Seen::Bracket { dribbled, clean } => [dribbled, clean],
+        Seen::Onset { at, standard_uncertainty: u } => [at - 2.0 * u, at + 2.0 * u],
     };
     let xs: Vec<f64> = (chart.points.iter().map(|p| p[0]))
         .chain(chart.marked.iter().map(|m| m.0))
@@ -152,7 +148,7 @@ fn point(svg: &mut Svg, plot: &Plot, (x, y, label): (f64, f64, &str), axis: &Axi
 }
 
 /// One row of bench data: single pours above and below the curve, brackets and onsets about one half. Rows are set off from each other a little.
-fn seen(svg: &mut Svg, plot: &Plot, row: &Seen<'_>, index: usize) {
+fn seen(svg: &mut Svg, plot: &Plot, row: &Seen, index: usize) {
     let place = |value: f64| plot.x.inside(value);
     let shift = STRIP * ((index * 7 % 10) as f64 / 10.0 - 0.45);
     let height = |p: f64| plot.y.place(p).unwrap_or(plot.bottom());
@@ -169,7 +165,7 @@ fn seen(svg: &mut Svg, plot: &Plot, row: &Seen<'_>, index: usize) {
                 svg.polygon(&[[x, y + 4.2], [x - 4.0, y - 3.0], [x + 4.0, y - 3.0]], Fill::Colour(INK), None);
             }
         }
-        Seen::Bracket { dribbled, clean, .. } => {
+        Seen::Bracket { dribbled, clean } => {
             let y = height(0.5) + 2.4 * shift;
             if let Some((from, to)) = place(dribbled).zip(place(clean)) {
                 svg.line([from, y], [to, y], Stroke::new(INK, 1.3));
@@ -181,7 +177,7 @@ fn seen(svg: &mut Svg, plot: &Plot, row: &Seen<'_>, index: usize) {
                 svg.circle([to, y], 3.4, Fill::White, line);
             }
         }
-        Seen::Onset { at, standard_uncertainty, .. } => {
+        Seen::Onset { at, standard_uncertainty } => {
             let y = height(0.5) + 2.4 * shift;
             if let Some(x) = place(at) {
                 let ends = [at - standard_uncertainty, at + standard_uncertainty]
@@ -194,10 +190,10 @@ fn seen(svg: &mut Svg, plot: &Plot, row: &Seen<'_>, index: usize) {
     }
 }
 
-fn legend(svg: &mut Svg, [left, top]: [f64; 2], rows: &[Seen<'_>]) {
+fn legend(svg: &mut Svg, [left, top]: [f64; 2], rows: &[Seen]) {
     let mut x = left + 6.0;
     let y = top + 8.0;
-    let has = |test: fn(&Seen<'_>) -> bool| rows.iter().any(test);
+    let has = |test: fn(&Seen) -> bool| rows.iter().any(test);
     let line = Some(Stroke::new(INK, 1.2));
     let down = |x: f64| [[x, y + 4.2], [x - 4.0, y - 3.0], [x + 4.0, y - 3.0]];
     let words = |svg: &mut Svg, from: f64, words: &str| {

@@ -7,7 +7,10 @@ use super::{
     number::{percent, with_unit},
     page::Heading,
 };
-use crate::{analysis::decision::Verdict, physics::numerics::normal_quantile};
+use crate::{
+    analysis::decision::Verdict,
+    physics::{numerics::normal_quantile, separation::numbers::FREE_SHEET_WEBER},
+};
 
 /// A table to be drawn. All columns have one row for each combination of the axes, the first axis slowest.
 #[derive(Debug, Clone, Copy)]
@@ -26,6 +29,8 @@ pub struct SweepTable<'a> {
     pub high: &'a [f64],
     /// Dribble probability.
     pub dribble_probability: &'a [f64],
+    /// Weber number, where the caller has it: the map then shows where no free sheet can leave. May be empty.
+    pub weber: &'a [f64],
     /// Verdicts; none at a point without an answer.
     pub verdicts: &'a [Option<Verdict>],
     /// Confidence of the verdicts and intervals.
@@ -94,7 +99,8 @@ pub fn sweep(table: &SweepTable<'_>) -> Result<String, NotDrawable> {
         return Err(NotDrawable::Points(count));
     }
     let numbers = [table.safety_factor, table.low, table.high, table.dribble_probability];
-    if numbers.iter().any(|column| column.len() != count) || table.verdicts.len() != count {
+    let weber_fits = table.weber.is_empty() || table.weber.len() == count;
+    if numbers.iter().any(|column| column.len() != count) || table.verdicts.len() != count || !weber_fits {
         return Err(NotDrawable::Columns);
     }
     match table.axes {
@@ -208,14 +214,16 @@ fn field_map(table: &SweepTable<'_>, x: &SweepAxis<'_>, y: &SweepAxis<'_>) -> St
         |axis: &SweepAxis<'_>, order: &[usize]| order.iter().map(|i| axis.values[*i]).collect::<Vec<f64>>();
     let verdicts: Vec<Option<Verdict>> = rows.iter().map(|row| table.verdicts[*row]).collect();
     let chances = of(table.dribble_probability);
-    // Probits are straighter between the points than probabilities. What is not clean for another reason (no free sheet) is kept on that side.
+    // Probits are straighter between the points than probabilities. Without the Weber number, what is not clean for want of a free sheet is kept on that
+    // side of the line; with it, it has a line of its own.
+    let weber = if table.weber.is_empty() { Vec::new() } else { of(table.weber) };
     let limit = normal_quantile(table.confidence);
     let probit = |p: f64| if p.is_finite() { normal_quantile(p.clamp(1e-12, 1.0 - 1e-12)) } else { f64::NAN };
     let probits: Vec<f64> = chances
         .iter()
         .zip(&verdicts)
         .map(|(p, verdict)| match verdict {
-            Some(Verdict::Marginal) => probit(*p).clamp(-limit + 1e-3, limit - 1e-3),
+            Some(Verdict::Marginal) if weber.is_empty() => probit(*p).clamp(-limit + 1e-3, limit - 1e-3),
             _ => probit(*p),
         })
         .collect();
@@ -232,6 +240,14 @@ fn field_map(table: &SweepTable<'_>, x: &SweepAxis<'_>, y: &SweepAxis<'_>) -> St
     let title = title(table, &format!("over {} and {}", x.axis.name, y.axis.name));
     let dribbles = format!("dribbles beyond (probability {})", percent(table.confidence));
     let clean = format!("clean beyond (probability {})", percent(1.0 - table.confidence));
+    let mut boundaries = vec![
+        Boundary { label: &dribbles, values: &probits, level: limit },
+        Boundary { label: &clean, values: &probits, level: -limit },
+    ];
+    if weber.iter().any(|we| *we < FREE_SHEET_WEBER) {
+        let label = "no free sheet beyond (Weber number 2): not clean";
+        boundaries.push(Boundary { label, values: &weber, level: FREE_SHEET_WEBER });
+    }
     let asked = table.asked.as_ref().and_then(|asked| match asked.at {
         [first, second] => Some([within(*first, x.values)?, within(*second, y.values)?]),
         _ => None,
@@ -246,10 +262,7 @@ fn field_map(table: &SweepTable<'_>, x: &SweepAxis<'_>, y: &SweepAxis<'_>) -> St
         values: &values,
         levels: &levels,
         dark,
-        boundaries: &[
-            Boundary { label: &dribbles, values: &probits, level: limit },
-            Boundary { label: &clean, values: &probits, level: -limit },
-        ],
+        boundaries: &boundaries,
         verdicts: &verdicts,
         asked,
     })
@@ -284,6 +297,7 @@ mod tests {
             low: &column(0.5),
             high: &column(2.0),
             dribble_probability: &chances,
+            weber: &[],
             verdicts: &verdicts,
             confidence: 0.95,
             asked: Some(Asked {
@@ -329,6 +343,7 @@ mod tests {
             low: &one,
             high: &one,
             dribble_probability: &one,
+            weber: &[],
             verdicts: &[None],
             confidence: 0.95,
             asked: None,

@@ -49,6 +49,8 @@ pub const MOST_MOMENTS: usize = 12;
 const WIDTH: f64 = 820.0;
 const ACROSS: usize = 4;
 const CAPTION: f64 = 40.0;
+/// How far outside the wall a dribble is drawn.
+const OUTSIDE: f64 = 4.5;
 
 /// Draws the vessel.
 #[must_use]
@@ -83,7 +85,12 @@ pub fn vessel(picture: &VesselPicture<'_>) -> String {
             [MARGIN + cell[0] * (index % across) as f64, top + (cell[1] + CAPTION) * (index / across) as f64];
         one(&mut page.svg, moment, corner, cell, scale);
     }
-    scale_bar(&mut page.svg, scale, bottom - 8.0);
+    if shown.is_empty() {
+        let middle = [0.5 * WIDTH, 0.5 * (top + bottom)];
+        page.svg.text(middle, "no moment to show", Letters::new(12.0).middle());
+    } else {
+        scale_bar(&mut page.svg, scale, bottom - 8.0);
+    }
     page.svg.finish(picture.heading.title, &description(picture, shown))
 }
 
@@ -131,8 +138,8 @@ fn one(svg: &mut Svg, moment: &VesselMoment<'_>, corner: [f64; 2], cell: [f64; 2
             }
             VesselStream::Dribbles => {
                 // Down the outer wall, for a while.
-                let run = outside(&wall, [px, py], 34.0, side);
-                svg.polyline(&run, line.dashed("3 2.5"));
+                let run = outside(&wall, [px, py], 60.0);
+                svg.polyline(&run, line);
             }
         }
         svg.circle([px, py], 3.4, Fill::White, Some(Stroke::new(INK, 1.4)));
@@ -167,21 +174,36 @@ fn crossing(a: [f64; 2], b: [f64; 2], level: f64) -> Option<f64> {
     ((a[1] >= level) != (b[1] >= level)).then(|| a[0] + (b[0] - a[0]) * (level - a[1]) / (b[1] - a[1]))
 }
 
-/// A line that follows the wall from the lip, a little outside it.
-fn outside(wall: &[[f64; 2]], lip: [f64; 2], length: f64, side: f64) -> Vec<[f64; 2]> {
+/// Twice the area inside an outline, by its sense of turning.
+fn turning(outline: &[[f64; 2]]) -> f64 {
+    let pair = |i: usize| {
+        let (a, b) = (outline[i], outline[(i + 1) % outline.len()]);
+        a[0] * b[1] - b[0] * a[1]
+    };
+    (0..outline.len()).map(pair).sum()
+}
+
+/// A line along the outside of the wall from the lip on, for `length`.
+fn outside(wall: &[[f64; 2]], lip: [f64; 2], length: f64) -> Vec<[f64; 2]> {
     let distance = |p: &[f64; 2]| libm::hypot(p[0] - lip[0], p[1] - lip[1]);
     let (Some(first), Some(last)) = (wall.first(), wall.last()) else { return Vec::new() };
-    let from_start = distance(first) <= distance(last);
-    let along: Vec<[f64; 2]> = if from_start { wall.to_vec() } else { wall.iter().rev().copied().collect() };
+    let mut sense = if turning(wall) < 0.0 { -OUTSIDE } else { OUTSIDE };
+    let mut along = wall.to_vec();
+    if distance(first) > distance(last) {
+        along.reverse();
+        sense = -sense;
+    }
     let mut run = vec![lip];
     let mut left = length;
     for pair in along.windows(2) {
-        let step = libm::hypot(pair[1][0] - pair[0][0], pair[1][1] - pair[0][1]);
-        let share = if step > 0.0 { (left / step).min(1.0) } else { 1.0 };
-        run.push([
-            pair[0][0] + share * (pair[1][0] - pair[0][0]) + 4.0 * side,
-            pair[0][1] + share * (pair[1][1] - pair[0][1]) + 2.0,
-        ]);
+        let [dx, dy] = [pair[1][0] - pair[0][0], pair[1][1] - pair[0][1]];
+        let step = libm::hypot(dx, dy);
+        if step <= 0.0 {
+            continue;
+        }
+        let share = (left / step).min(1.0);
+        let off = [sense * dy / step, -sense * dx / step];
+        run.extend([0.0, share].map(|s| [pair[0][0] + s * dx + off[0], pair[0][1] + s * dy + off[1]]));
         left -= step;
         if left <= 0.0 {
             break;
@@ -239,5 +261,16 @@ mod tests {
         assert_eq!(filled, [[0.0, 4.0], [0.0, 10.0], [10.0, 10.0], [10.0, 4.0]]);
         assert!(below(&square, 20.0).is_empty());
         assert_eq!(below(&square, -5.0).len(), 4);
+    }
+
+    #[test]
+    fn a_dribble_runs_outside_whichever_way_the_wall_is_given() {
+        let square = [[0.0, 0.0], [0.0, 10.0], [10.0, 10.0], [10.0, 0.0]];
+        let mut other = square;
+        other.reverse();
+        for wall in [square, other] {
+            let run = outside(&wall, [10.0, 0.0], 8.0);
+            assert_eq!(run, [[10.0, 0.0], [10.0 + OUTSIDE, 0.0], [10.0 + OUTSIDE, 8.0]]);
+        }
     }
 }

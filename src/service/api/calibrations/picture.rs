@@ -32,19 +32,20 @@ pub(super) fn picture(
             [at, fit.mixture.clean_probability(&centre, offset + at), low, high]
         })
         .collect();
-    let seen: Vec<render::Seen<'_>> = (observed.rows.iter().zip(&request.observations))
+    let seen: Vec<render::Seen> = observed
+        .rows
+        .iter()
         .take(MOST_MARKS)
-        .map(|(row, asked)| {
+        .map(|row| {
             let (shift, _) = fit.moments.predict(&row.row(&fit.centre).covariates);
-            let name = asked.name.as_str();
             match row.seen {
                 Seen::Clean { at } => render::Seen::Clean(at - shift),
                 Seen::Dribbled { at } => render::Seen::Dribbled(at - shift),
                 Seen::Bracket { low, high } => {
-                    render::Seen::Bracket { dribbled: low - shift, clean: high - shift, name }
+                    render::Seen::Bracket { dribbled: low - shift, clean: high - shift }
                 }
                 Seen::Onset { at, standard_uncertainty } => {
-                    render::Seen::Onset { at: at - shift, standard_uncertainty, name }
+                    render::Seen::Onset { at: at - shift, standard_uncertainty }
                 }
             }
         })

@@ -9,6 +9,7 @@ use axum::response::Response;
 use http::{HeaderMap, HeaderValue, header};
 
 pub use answer::EvaluationAnswer;
+pub use parts::{IntervalAnswer, VerdictAnswer};
 pub use request::{EXAMPLE, EvaluationRequest, MethodRequest, OuterFaceRequest, PourRequest};
 
 use crate::{

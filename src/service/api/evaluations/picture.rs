@@ -1,9 +1,7 @@
 //! The evaluation as a picture: the answer's numbers in words beside the lip.
 
-use super::{
-    answer::EvaluationAnswer,
-    parts::{IntervalAnswer, RegimeAnswer},
-};
+use super::answer::EvaluationAnswer;
+use super::parts::{IntervalAnswer, RegimeAnswer};
 use crate::{
     analysis::{
         decision::Verdict,
@@ -51,7 +49,9 @@ fn title(verdict: Verdict, answer: &EvaluationAnswer<'_>) -> String {
         Verdict::Marginal => "Marginal: it may leave or dribble",
         Verdict::Dribbles => "Dribbles: the liquid runs down the outside",
     };
-    format!("{says}; dribble probability {}", percent(answer.dribble_probability.0))
+    // A degree of belief is never certainty, whatever the last digit says.
+    let probability = answer.dribble_probability.0.clamp(1e-9, 1.0 - 1e-9);
+    format!("{says}; dribble probability {}", percent(probability))
 }
 
 fn subtitle(spec: &Spec) -> String {
@@ -59,21 +59,21 @@ fn subtitle(spec: &Spec) -> String {
         LiquidSpec::Catalogue { entry, conditions, .. } => {
             format!("{} at {}", entry.name, with_unit(conditions.temperature_c, "°C"))
         }
-        LiquidSpec::Measured { .. } => "A measured liquid".to_owned(),
+        LiquidSpec::Measured { .. } => "Measured liquid".to_owned(),
     };
     let surface = match &spec.surface {
         SurfaceSpec::Catalogue { material, state } => {
             format!("{} ({})", material.name, state.as_str().replace('_', " "))
         }
-        SurfaceSpec::Measured { .. } => "a lip of measured contact angles".to_owned(),
-        SurfaceSpec::Estimated { .. } => "a lip of known surface energy".to_owned(),
+        SurfaceSpec::Measured { .. } => "measured contact angles".to_owned(),
+        SurfaceSpec::Estimated { .. } => "angles estimated from surface energy".to_owned(),
     };
     let face = match spec.outer_face {
         OuterFace::Dry => "dry",
         OuterFace::Wet => "wet",
     };
     format!(
-        "{liquid} on {surface}, outer face {face}; {}; verdict and intervals at {} confidence",
+        "{liquid} · {surface}, outer face {face} · {} · verdict and intervals at {} confidence",
         with_unit(spec.flow_ml_s, "mL/s"),
         percent(spec.confidence)
     )
@@ -102,7 +102,7 @@ fn facts(spec: &Spec, answer: &EvaluationAnswer<'_>) -> Vec<(String, String)> {
         ("Safety factor (Weber over critical)", interval(&answer.safety_factor)),
         ("Weber number; critical", format!("{}; {}", words(stream.weber), words(threshold.critical_weber))),
         (
-            "Stream on the floor",
+            "Stream, as an equivalent sheet",
             format!(
                 "{} thick, {}, {regime}",
                 with_unit(stream.thickness_mm.0, "mm"),

@@ -137,7 +137,7 @@ pub fn lip(picture: &LipPicture<'_>) -> String {
                 svg.polyline(&view.all(&path), Stroke::new(INK, 1.1).dashed("7 4"));
             }
         } else if !outline.runs_along_wall() {
-            let size = (picture.brink_mm * view.scale).clamp(5.0, 22.0);
+            let size = drop_size(&view, &outline);
             let [x, y] = view.at(drip);
             drop(svg, [x, y + 0.9 * size], size);
         }
@@ -150,6 +150,11 @@ pub fn lip(picture: &LipPicture<'_>) -> String {
     section::draw(svg, picture, [MARGIN + DRAWING + 22.0, top + 4.0, WIDTH - MARGIN, top + 166.0]);
     facts(svg, picture.facts, [MARGIN + DRAWING + 22.0, top + 190.0, WIDTH - MARGIN, bottom]);
     page.svg.finish(picture.heading.title, &description(picture))
+}
+
+/// Size of the drop on the sheet: its length is twice that.
+fn drop_size(view: &View, outline: &Outline) -> f64 {
+    (outline.brink * view.scale).clamp(5.0, 22.0)
 }
 
 /// A drop with its top at `at`.
@@ -233,25 +238,27 @@ fn labels(svg: &mut Svg, view: &View, outline: &Outline, picture: &LipPicture<'_
         let [from, to] =
             [0.0, 9.0 / view.scale].map(|below| view.at(outline.above(picture.length_mm, -below)));
         svg.line(from, to, Stroke::new(INK, 1.6));
-        if picture.length_mm > 0.45 * reach {
+        // Where the solid is thick enough for the words.
+        if picture.length_mm > 0.45 * reach && picture.turn_deg < 140.0 {
             let words = format!("floor begins, {}", with_unit(picture.length_mm, "mm"));
-            let [x, y] = view.at(outline.above(picture.length_mm, -22.0 / view.scale));
-            svg.text(kept([x, y + 16.0], &words), &words, SMALL.middle().halo());
+            let [x, y] = view.at(outline.above(picture.length_mm, -46.0 / view.scale));
+            svg.line(to, [x, y - 6.0], thin);
+            svg.text(kept([x, y + 6.0], &words), &words, SMALL.middle().halo());
         }
     }
     if picture.deflection_deg.is_none() {
-        let bold = SMALL.bold().halo();
-        let (at, right, words) = if outline.runs_along_wall() {
+        let (words, [x, y]) = if outline.runs_along_wall() {
+            let words = "clings, runs down the wall";
             let (at, right) = outline.beside_wall(10.0 / view.scale);
-            (at, right, "clings, runs down the wall")
+            let half = 0.5 * text::bold_width(words, SMALL.size);
+            let [x, y] = view.at(at);
+            (words, [if right { x + half } else { x - half }, y + 4.0])
         } else {
-            let [x, y] = outline.drip();
-            ([x + 36.0 / view.scale, y - 40.0 / view.scale], true, "clings, drips from the underside")
+            // Below the drop.
+            let [x, y] = view.at(outline.drip());
+            ("clings, drips from the underside", [x, y + 3.4 * drop_size(view, outline) + 14.0])
         };
-        let [x, y] = view.at(at);
-        let half = 0.5 * text::bold_width(words, SMALL.size);
-        let middle = if right { x + half } else { x - half };
-        svg.text(kept([middle, y + 4.0], words), words, bold.middle());
+        svg.text(kept([x, y], words), words, SMALL.bold().halo().middle());
     }
 }
 
