@@ -92,30 +92,30 @@ pub fn approach(case: &Case, flow: f64) -> Result<Approach, StreamFault> {
 }
 
 /// The threshold of an edge for a stream, corrected by the calibration if there is one.
-#[inline]
+#[inline(always)]
 #[must_use]
 pub fn threshold(
     set: &CoefficientSet,
     calibration: Option<&Calibration>,
-    approach: &Approach,
+    film: &FilmTerms,
     (edge, rim): (&Edge, &RimTerms),
 ) -> Threshold {
-    let threshold = edge.threshold_for(set, &approach.terms, rim);
+    let threshold = edge.threshold_for(set, film, rim);
     match calibration {
         None => threshold,
-        Some(calibration) => calibration.corrected(&threshold, &place(approach, (edge, rim))),
+        Some(calibration) => calibration.corrected(&threshold, &place(film, (edge, rim))),
     }
 }
 
 /// Where on the closed form a stream and an edge lie.
 #[must_use]
-pub fn place(approach: &Approach, (edge, rim): (&Edge, &RimTerms)) -> Place {
+pub fn place(film: &FilmTerms, (edge, rim): (&Edge, &RimTerms)) -> Place {
     Place {
-        radius_ratio: rim.radius() / approach.film.thickness,
+        radius_ratio: rim.radius() / film.thickness(),
         contact_angle: edge.contact_angle(),
         turn: edge.turn(),
-        reynolds: approach.numbers.reynolds,
-        froude: approach.numbers.froude,
+        reynolds: film.reynolds(),
+        froude: film.froude(),
     }
 }
 
@@ -143,7 +143,7 @@ pub fn film_numbers(case: &Case, flow: f64) -> Result<Numbers, StreamFault> {
 pub fn weigh(case: &Case, edge: &Prepared, stream: Stream, thickness: f64) -> Balance {
     let approach = Approach::of(case.coefficients, &case.liquid, stream, thickness);
     let threshold =
-        threshold(case.coefficients, case.calibration.as_ref(), &approach, (&edge.edge, &edge.rim));
+        threshold(case.coefficients, case.calibration.as_ref(), &approach.terms, (&edge.edge, &edge.rim));
     Balance {
         stream,
         numbers: approach.numbers_at(&case.liquid, case.lip.edge.radius),
@@ -155,6 +155,7 @@ pub fn weigh(case: &Case, edge: &Prepared, stream: Stream, thickness: f64) -> Ba
 /// Changes of ln(safety factor) per unit of ln thickness and of ln speed of the stream.
 ///
 /// ln S = ln We − ln We_c with We = ρU²h/γ, Re = ρUh/μ, Fr = U²/(gh), r/h.
+#[inline(always)]
 #[must_use]
 pub fn by_film(t: &Threshold) -> Pair {
     Pair {
@@ -193,6 +194,7 @@ pub struct Pair {
 
 impl Pair {
     /// What an input that changes thickness and speed by `change` does.
+    #[inline(always)]
     #[must_use]
     pub fn through(self, change: Self) -> f64 {
         self.thickness * change.thickness + self.speed * change.speed

@@ -9,7 +9,7 @@ use super::{
 use crate::physics::{
     numerics::normal_cdf,
     separation::{
-        closed_form::{CoefficientSet, Edge, Reach, RimTerms, Threshold},
+        closed_form::{CoefficientSet, Edge, FilmTerms, Reach, RimTerms, Threshold},
         numbers::FREE_SHEET_WEBER,
     },
     stream::{Stream, StreamFault},
@@ -127,21 +127,39 @@ pub struct Judgement {
     pub verdict: Verdict,
 }
 
+/// What a judgement looks at of a stream.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Approaching {
+    /// Its share of the closed form.
+    pub terms: FilmTerms,
+    /// ln We.
+    pub ln_weber: f64,
+    /// We.
+    pub weber: f64,
+}
+
+impl From<&Approach> for Approaching {
+    #[inline(always)]
+    fn from(approach: &Approach) -> Self {
+        Self { terms: approach.terms, ln_weber: approach.ln_weber, weber: approach.numbers.weber }
+    }
+}
+
 /// Judges a stream at an edge: the last step of every decision, single or one of many.
-#[inline]
+#[inline(always)]
 #[must_use]
 pub fn judge(
     set: &CoefficientSet,
     calibration: Option<&Calibration>,
     confidence: f64,
-    approach: &Approach,
+    approach: &Approaching,
     (edge, rim): (&Edge, &RimTerms),
     (doubt, edge_doubt, stream_doubt): (&Doubt, EdgeDoubt, &StreamDoubt),
 ) -> Judgement {
-    let threshold = threshold(set, calibration, approach, (edge, rim));
+    let threshold = threshold(set, calibration, &approach.terms, (edge, rim));
     let mut reach = edge.reach_for(set, &approach.terms, rim);
     if let Some(calibration) = calibration {
-        let place = place(approach, (edge, rim));
+        let place = place(&approach.terms, (edge, rim));
         reach.standard_uncertainty =
             calibration.standard_uncertainty(reach.standard_uncertainty, set, &place);
     }
@@ -149,7 +167,7 @@ pub fn judge(
     let own = reach.standard_uncertainty * reach.standard_uncertainty;
     let standard_uncertainty = (doubt.variance(&threshold, edge_doubt, stream_doubt) + own).sqrt();
     let dribble_probability = normal_cdf(-margin / standard_uncertainty);
-    let free_sheet = approach.numbers.weber >= FREE_SHEET_WEBER;
+    let free_sheet = approach.weber >= FREE_SHEET_WEBER;
     let verdict = verdict(dribble_probability, confidence, free_sheet);
     Judgement { threshold, reach, margin, standard_uncertainty, dribble_probability, verdict }
 }
@@ -175,7 +193,7 @@ pub fn decide(case: &Case) -> Result<Decision, StreamFault> {
         case.coefficients,
         case.calibration.as_ref(),
         case.confidence.level,
-        &approach,
+        &Approaching::from(&approach),
         (&edge.edge, &edge.rim),
         (&doubt, edge_doubt, &stream_doubt),
     );
@@ -195,7 +213,8 @@ pub fn decide(case: &Case) -> Result<Decision, StreamFault> {
     })
 }
 
-fn verdict(probability: f64, confidence: f64, free_sheet: bool) -> Verdict {
+#[inline(always)]
+pub(super) fn verdict(probability: f64, confidence: f64, free_sheet: bool) -> Verdict {
     if probability >= confidence {
         Verdict::Dribbles
     } else if probability <= 1.0 - confidence && free_sheet {

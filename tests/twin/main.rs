@@ -208,7 +208,7 @@ proptest! {
             }
             match single(&at) {
                 Ok((expected, verdict)) => {
-                    prop_assert_eq!(block.faults[row], None);
+                    prop_assert_eq!(block.faults.at(row), None);
                     prop_assert_eq!(verdicts[row], Some(verdict));
                     for (i, expected) in expected.into_iter().enumerate() {
                         let found = numbers(&block, i)[row];
@@ -216,7 +216,7 @@ proptest! {
                     }
                 }
                 Err(faults) => {
-                    prop_assert!(block.faults[row].is_some_and(|code| faults.iter().any(|f| f.code == code)));
+                    prop_assert!(block.faults.at(row).is_some_and(|code| faults.iter().any(|f| f.code == code)));
                     prop_assert!(numbers(&block, 0)[row].is_nan() && verdicts[row].is_none());
                 }
             }

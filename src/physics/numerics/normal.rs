@@ -1,10 +1,6 @@
 //! The standard normal distribution, on portable functions (statistics crates call the platform's).
 
-/// Φ(x), the probability below `x`.
-#[must_use]
-pub fn normal_cdf(x: f64) -> f64 {
-    0.5 * libm::erfc(-x * core::f64::consts::FRAC_1_SQRT_2)
-}
+use super::lanes::normal_cdf;
 
 /// Below this Φ is computed through its hazard, where `erfc` would in the end vanish.
 const FAR_TAIL: f64 = -8.0;

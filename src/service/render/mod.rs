@@ -31,7 +31,7 @@ pub(in crate::service) use number::{percent, significant, with_unit};
 pub use page::Heading;
 pub use panels::{Panel, Panels, Span, panels};
 pub use probability::{ProbabilityChart, Seen, probability};
-pub use sweep::{Asked, Drawn, FEW, NotDrawable, SweepAxis, SweepTable, sweep};
+pub use sweep::{Asked, Drawn, FEW, NotDrawable, SweepAxis, SweepTable, drawable, sweep, sweep_picture};
 pub use vessel::{MOST_MOMENTS, VesselMoment, VesselPicture, VesselStream, vessel};
 
 /// The media type of the pictures.

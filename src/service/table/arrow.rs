@@ -33,12 +33,16 @@ pub fn schema(heads: &[Head], about: HashMap<String, String>) -> SchemaRef {
 /// # Errors
 /// When the block does not fit the schema.
 pub fn batch(schema: &SchemaRef, block: Block) -> Result<RecordBatch, ArrowError> {
+    let faults: ArrayRef = match block.faults.codes() {
+        Some(codes) => words(codes.to_vec()),
+        None => Arc::new(StringArray::new_null(block.len())),
+    };
     let axes = block.axes.into_iter().map(|values| numbers(values, false));
     let outputs = block.columns.into_iter().map(|column| match column {
         Column::Numbers(values) => numbers(values, true),
         Column::Words(values) => words(values),
     });
-    let columns = axes.chain(outputs).chain([words(block.faults)]).collect();
+    let columns = axes.chain(outputs).chain([faults]).collect();
     RecordBatch::try_new(schema.clone(), columns)
 }
 
@@ -49,9 +53,6 @@ fn numbers(values: Vec<f64>, may_be_empty: bool) -> ArrayRef {
 }
 
 fn words(values: Vec<Option<&'static str>>) -> ArrayRef {
-    if values.iter().all(Option::is_none) {
-        return Arc::new(StringArray::new_null(values.len()));
-    }
     Arc::new(StringArray::from(values))
 }
 

@@ -25,6 +25,7 @@ pub fn lines(columns: &[Cells<'_>], rows: usize) -> Vec<u8> {
                         text.extend_from_slice(buffer.format_finite(*number).as_bytes());
                     }
                 }
+                Cells::Nothing(_) => {}
                 Cells::Words(words) => {
                     text.extend_from_slice(words.get(row).copied().flatten().unwrap_or_default().as_bytes());
                 }

@@ -25,7 +25,7 @@ use crate::{
         fingerprint::ModelAnswer,
         heavy::piece,
         settings::cores,
-        table::{Cells, arrow, columns, csv, json},
+        table::{Cells, arrow, columns, csv, faults, json},
     },
 };
 
@@ -303,14 +303,14 @@ fn column(work: &Work, part: Part, rows: Range<usize>) -> Result<Vec<u8>, Cancel
             Part::Output(index) => block.columns.get(index).map(Cells::from),
             Part::Axis(_) | Part::Fault => None,
         };
-        return Ok(json::items(cells.unwrap_or(Cells::Words(&block.faults)), first));
+        return Ok(json::items(cells.unwrap_or_else(|| faults(block)), first));
     }
     let output = match part {
         Part::Output(index) => work.job.plan.outputs.get(index),
         Part::Axis(_) | Part::Fault => None,
     };
     let block = work.block(rows, output.map_or(&[], std::slice::from_ref))?;
-    let cells = block.columns.first().map_or(Cells::Words(&block.faults), Cells::from);
+    let cells = block.columns.first().map_or_else(|| faults(&block), Cells::from);
     Ok(json::items(cells, first))
 }
 
