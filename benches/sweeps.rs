@@ -72,6 +72,7 @@ fn level() -> Spec {
         confidence: 0.95,
         uncertainty: Uncertainties::default(),
         coefficients: DEFAULT_SET,
+        calibration: None,
     }
 }
 

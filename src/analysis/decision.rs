@@ -1,7 +1,8 @@
 //! The one function that decides a case.
 
 use super::{
-    balance::{Approach, Balance, StreamSlopes, approach, prepare, slopes},
+    balance::{Approach, Balance, StreamSlopes, approach, place, prepare, slopes, threshold},
+    calibration::Calibration,
     case::{Case, Input, Primary, Shift, Slopes, Source},
     doubt::{Doubt, EdgeDoubt, StreamDoubt},
 };
@@ -149,13 +150,19 @@ impl From<&Approach> for Approaching {
 #[must_use]
 pub fn judge(
     set: &CoefficientSet,
+    calibration: Option<&Calibration>,
     confidence: f64,
     approach: &Approaching,
     (edge, rim): (&Edge, &RimTerms),
     (doubt, edge_doubt, stream_doubt): (&Doubt, EdgeDoubt, &StreamDoubt),
 ) -> Judgement {
-    let threshold = edge.threshold_for(set, &approach.terms, rim);
-    let reach = edge.reach_for(set, &approach.terms, rim);
+    let threshold = threshold(set, calibration, &approach.terms, (edge, rim));
+    let mut reach = edge.reach_for(set, &approach.terms, rim);
+    if let Some(calibration) = calibration {
+        let place = place(&approach.terms, (edge, rim));
+        reach.standard_uncertainty =
+            calibration.standard_uncertainty(reach.standard_uncertainty, set, &place);
+    }
     let margin = approach.ln_weber - threshold.ln_critical_weber;
     let own = reach.standard_uncertainty * reach.standard_uncertainty;
     let standard_uncertainty = (doubt.variance(&threshold, edge_doubt, stream_doubt) + own).sqrt();
@@ -184,6 +191,7 @@ pub fn decide(case: &Case) -> Result<Decision, StreamFault> {
     }
     let judged = judge(
         case.coefficients,
+        case.calibration.as_ref(),
         case.confidence.level,
         &Approaching::from(&approach),
         (&edge.edge, &edge.rim),

@@ -16,6 +16,7 @@ use super::problem::{PROBLEM_JSON, ProblemDocument, ProblemKind};
     ),
     tags(
         (name = "lip", description = "Does a lip dribble?"),
+        (name = "bench", description = "What bench pours and measured parts say"),
         (name = "maps", description = "Where does clean end?"),
         (name = "catalogue", description = "Liquids, materials, and how they wet each other"),
         (name = "operation", description = "For those who run the service")

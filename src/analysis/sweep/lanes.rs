@@ -119,7 +119,7 @@ impl Default for Judged {
     }
 }
 
-/// The step, as the vector dispatcher takes it.
+/// The step, as the vector dispatcher takes it. Without a calibration: its logarithms are calls, and points with one are judged one by one.
 pub(super) struct Step<'a> {
     pub(super) set: &'a CoefficientSet,
     pub(super) confidence: f64,
@@ -158,8 +158,14 @@ impl pulp::NullaryFnOnce for Step<'_> {
             let rim = RimTerms::from_array([r[0], r[1], r[2]]);
             let stream_doubt = StreamDoubt::from_array([s[9], s[10], s[11], s[12], s[13]]);
             let edge_doubt = EdgeDoubt { turn: e[6], radius: r[3] };
-            let found =
-                judge(&set, confidence, &approaching, (&edge, &rim), (&doubt, edge_doubt, &stream_doubt));
+            let found = judge(
+                &set,
+                None,
+                confidence,
+                &approaching,
+                (&edge, &rim),
+                (&doubt, edge_doubt, &stream_doubt),
+            );
             judged.critical_weber[i] = found.threshold.critical_weber;
             judged.margin[i] = found.margin;
             judged.standard_uncertainty[i] = found.standard_uncertainty;

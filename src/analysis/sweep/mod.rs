@@ -102,6 +102,7 @@ impl Sweep {
         let length = axes.last().map_or(1, Axis::len);
         let mut desk = Desk::default();
         let side_by_side = outputs.iter().all(|output| output.is_of_judgement());
+        let side_by_side = side_by_side && self.ground.base.calibration.is_none();
         let mut lanes = side_by_side.then(Lanes::default);
         let mut row = rows.start;
         while row < rows.end {
@@ -192,6 +193,7 @@ impl Sweep {
                 Ok(parts) => {
                     let judged = judge(
                         set,
+                        ground.base.calibration.as_ref(),
                         confidence.level,
                         &(&parts.stream.approach).into(),
                         (&parts.edge.edge, &parts.rim.rim),

@@ -7,6 +7,6 @@ mod quadrature;
 mod root;
 
 pub use lanes::{ln, normal_cdf};
-pub use normal::normal_quantile;
+pub use normal::{ln_normal_cdf, normal_hazard_below, normal_quantile};
 pub use quadrature::gauss_legendre_8;
 pub use root::{Bracket, find_root};

@@ -153,6 +153,12 @@ impl Edge {
         self.contact_angle
     }
 
+    /// Turn of the edge, rad.
+    #[must_use]
+    pub fn turn(&self) -> f64 {
+        self.turn
+    }
+
     /// The threshold for a stream with these numbers.
     #[must_use]
     pub fn threshold(&self, set: &CoefficientSet, numbers: &Numbers) -> Threshold {
@@ -251,6 +257,24 @@ impl FilmTerms {
         Self { thickness, reynolds, froude, radius, fall, blunt, doubt }
     }
 
+    /// Its thickness, in the unit that it was made with.
+    #[must_use]
+    pub const fn thickness(&self) -> f64 {
+        self.thickness
+    }
+
+    /// Its Reynolds number.
+    #[must_use]
+    pub const fn reynolds(&self) -> f64 {
+        self.reynolds
+    }
+
+    /// Its Froude number.
+    #[must_use]
+    pub const fn froude(&self) -> f64 {
+        self.froude
+    }
+
     /// The share of a film of this thickness (in any unit, that of the radius it will meet), Reynolds and Froude number.
     #[must_use]
     pub fn of(set: &CoefficientSet, thickness: f64, reynolds: f64, froude: f64) -> Self {
@@ -309,6 +333,12 @@ impl RimTerms {
             power: libm::exp(set.radius[1] * ln_radius),
             gravity_power: libm::exp(set.gravity[2] * ln_radius),
         }
+    }
+
+    /// Its radius, in the unit that it was made with.
+    #[must_use]
+    pub fn radius(&self) -> f64 {
+        self.radius
     }
 }
 
