@@ -218,13 +218,34 @@ fn outside(wall: &[[f64; 2]], lip: [f64; 2], length: f64) -> Vec<[f64; 2]> {
         }
         let share = (left / step).min(1.0);
         let off = [sense * dy / step, -sense * dx / step];
-        run.extend([0.0, share].map(|s| [pair[0][0] + s * dx + off[0], pair[0][1] + s * dy + off[1]]));
+        let [from, to] = [0.0, share].map(|s| [pair[0][0] + s * dx + off[0], pair[0][1] + s * dy + off[1]]);
+        // In an inner corner the two lines cross: the way goes over where they do.
+        if let [.., before, end] = run[..]
+            && run.len() > 2
+            && let Some(corner) = crossing_point([before, end], [from, to])
+        {
+            run.pop();
+            run.extend([corner, to]);
+        } else {
+            run.extend([from, to]);
+        }
         left -= step;
         if left <= 0.0 {
             break;
         }
     }
     run
+}
+
+/// Where two stretches cross.
+fn crossing_point([a, b]: [[f64; 2]; 2], [c, d]: [[f64; 2]; 2]) -> Option<[f64; 2]> {
+    let (first, second) = ([b[0] - a[0], b[1] - a[1]], [d[0] - c[0], d[1] - c[1]]);
+    let product = |u: [f64; 2], v: [f64; 2]| u[0] * v[1] - u[1] * v[0];
+    let between = [c[0] - a[0], c[1] - a[1]];
+    let across = product(first, second);
+    let (s, t) = (product(between, second) / across, product(between, first) / across);
+    let inside = |share: f64| (0.0..=1.0).contains(&share);
+    (inside(s) && inside(t)).then(|| [a[0] + s * first[0], a[1] + s * first[1]])
 }
 
 fn scale_bar(svg: &mut Svg, scale: f64, y: f64) {
@@ -276,6 +297,15 @@ mod tests {
         assert_eq!(filled, [[0.0, 4.0], [0.0, 10.0], [10.0, 10.0], [10.0, 4.0]]);
         assert!(below(&square, 20.0).is_empty());
         assert_eq!(below(&square, -5.0).len(), 4);
+    }
+
+    #[test]
+    fn a_dribble_cuts_inner_corners() {
+        // A shelf that reaches out to the right, and the wall below it; inside is to the left and above.
+        let wall = [[30.0, 0.0], [10.0, 0.0], [10.0, 50.0], [-10.0, 50.0], [-10.0, 0.0]];
+        let run = outside(&wall, wall[0], 40.0);
+        let corner = [10.0 + OUTSIDE, OUTSIDE];
+        assert_eq!(run, [wall[0], [30.0, OUTSIDE], corner, [10.0 + OUTSIDE, 20.0]]);
     }
 
     #[test]

@@ -16,6 +16,8 @@ use crate::{
 /// Safety factors below this are not drawn: they go to zero with the flow, and would press the rest flat.
 const LEAST_FACTOR: f64 = 0.01;
 
+const MM: f64 = quantity::VESSEL_LENGTH.to_si;
+
 /// Draws the pour.
 pub(super) fn picture(spec: &PourSpec, pour: &Pour, model: &ModelAnswer) -> String {
     let small = pour.samples.iter().any(|s| s.decided.is_some_and(|d| d.safety_factor < LEAST_FACTOR));
@@ -47,7 +49,10 @@ pub(super) fn picture(spec: &PourSpec, pour: &Pour, model: &ModelAnswer) -> Stri
     let chosen = chosen(pour);
     let marks: Vec<Mark<'_>> =
         chosen.iter().filter(|(_, s)| s.flow > 0.0).map(|(label, s)| Mark { at: s.time, label }).collect();
-    let drawn: Vec<Drawn> = chosen.iter().map(|(label, sample)| Drawn::new(pour, label, sample)).collect();
+    let rest = pour.vessel.outline(0.0, 0.0);
+    let upright = with_spout(rest.wall, rest.lip, spec.lip.slope_deg * quantity::RUN_SLOPE.to_si);
+    let drawn: Vec<Drawn> =
+        chosen.iter().map(|(label, sample)| Drawn::new(pour, &upright, label, sample)).collect();
     let moments: Vec<VesselMoment<'_>> = drawn.iter().map(Drawn::moment).collect();
     let title = title(pour);
     let chart = Panels {
@@ -119,6 +124,27 @@ fn chosen(pour: &Pour) -> Vec<(&'static str, &Sample)> {
     found
 }
 
+/// The wall of the upright vessel with its spout: the lip's floor goes on at its slope until it meets the wall, or else straight from the brim. How a spout opens into its
+/// vessel is not given; this is a likely shape.
+fn with_spout(mut wall: Vec<[f64; 2]>, lip: [f64; 2], slope: f64) -> Vec<[f64; 2]> {
+    if wall.first().is_none_or(|brim| *brim == lip) {
+        return wall;
+    }
+    let over_floor = |[x, z]: [f64; 2]| z - lip[1] - libm::tan(slope) * (lip[0] - x);
+    let near = wall.windows(2).take_while(|pair| pair[0][0] > 0.0);
+    let met = near.enumerate().find_map(|(i, pair)| {
+        let (above, below) = (over_floor(pair[0]), over_floor(pair[1]));
+        let share = above / (above - below);
+        let at = [0, 1].map(|axis| pair[0][axis] + share * (pair[1][axis] - pair[0][axis]));
+        (above > 0.0 && below <= 0.0 && at[0] > 0.0).then_some((i, at))
+    });
+    match met {
+        Some((i, at)) => wall.splice(..=i, [lip, at]).for_each(drop),
+        None => wall.insert(0, lip),
+    }
+    wall
+}
+
 /// A moment with what it borrows.
 struct Drawn {
     caption: String,
@@ -129,15 +155,12 @@ struct Drawn {
 }
 
 impl Drawn {
-    fn new(pour: &Pour, label: &str, sample: &Sample) -> Self {
-        let mm = |[x, y]: [f64; 2]| [x / quantity::VESSEL_LENGTH.to_si, y / quantity::VESSEL_LENGTH.to_si];
+    fn new(pour: &Pour, upright: &[[f64; 2]], label: &str, sample: &Sample) -> Self {
+        let (sine, cosine) = libm::sincos(sample.tilt);
+        let tilted = |[x, z]: [f64; 2]| [(x * cosine + z * sine) / MM, (z * cosine - x * sine) / MM];
         let outline = pour.vessel.outline(sample.tilt, sample.head);
-        let lip = mm(outline.lip);
-        let mut wall: Vec<[f64; 2]> = outline.wall.into_iter().map(mm).collect();
-        // A spout reaches out from the brim.
-        if wall.first() != Some(&lip) {
-            wall.insert(0, lip);
-        }
+        let wall: Vec<[f64; 2]> = upright.iter().copied().map(tilted).collect();
+        let lip = outline.lip.map(|place| place / MM);
         let stream = match (sample.flow > 0.0, sample.attached) {
             (false, _) => VesselStream::None,
             (true, true) => VesselStream::Dribbles,
@@ -148,7 +171,7 @@ impl Drawn {
         if sample.flow > 0.0 {
             caption.push_str(&format!(", {}", with_unit(sample.flow / quantity::FLOW.to_si, "mL/s")));
         }
-        let level = (!outline.liquid.is_empty()).then(|| outline.level / quantity::VESSEL_LENGTH.to_si);
+        let level = (!outline.liquid.is_empty()).then(|| outline.level / MM);
         Self { caption, wall, level, lip, stream }
     }
 
@@ -160,5 +183,21 @@ impl Drawn {
             lip: Some(self.lip),
             stream: self.stream,
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_spout_meets_the_wall_where_its_floor_does() {
+        let wall = vec![[5.0, 10.0], [5.0, 0.0], [-5.0, 0.0], [-5.0, 10.0]];
+        let rising = with_spout(wall.clone(), [8.0, 10.0], -45_f64.to_radians());
+        assert_eq!(rising.len(), 5);
+        assert_eq!((rising[0], rising[2]), ([8.0, 10.0], [5.0, 0.0]));
+        assert!((rising[1][0] - 5.0).abs() < 1e-12 && (rising[1][1] - 7.0).abs() < 1e-12, "{rising:?}");
+        assert_eq!(with_spout(wall.clone(), [8.0, 10.0], 0.3)[..2], [[8.0, 10.0], [5.0, 10.0]]);
+        assert_eq!(with_spout(wall.clone(), [5.0, 10.0], -0.3), wall);
     }
 }
