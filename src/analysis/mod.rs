@@ -16,5 +16,6 @@ pub mod notice;
 pub mod remedy;
 pub mod resolve;
 pub mod spec;
+pub mod statistics;
 pub mod uncertainty;
 pub mod warnings;
