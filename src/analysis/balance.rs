@@ -2,10 +2,10 @@
 
 use super::case::{Case, Primary, Slopes};
 use crate::physics::{
-    lip::{Run, Section},
+    lip::{Lip, Run, Section},
     liquid::Liquid,
     separation::{
-        closed_form::{Edge, Threshold},
+        closed_form::{CoefficientSet, Edge, FilmTerms, RimTerms, Threshold},
         numbers::{Film, Numbers},
     },
     stream::{Control, Stream, StreamFault, approach_film},
@@ -24,17 +24,75 @@ pub struct Balance {
     pub ln_safety_factor: f64,
 }
 
+/// An edge prepared for one contact angle: its wetting and turn, and its rounding.
+#[derive(Debug, Clone, Copy)]
+pub struct Prepared {
+    /// Wetting and turn.
+    pub edge: Edge,
+    /// The rounding.
+    pub rim: RimTerms,
+}
+
 /// The edge of this case, prepared for a contact angle (rad).
 #[must_use]
-pub fn prepare(case: &Case, contact_angle: f64) -> Edge {
-    Edge::new(case.coefficients, contact_angle, case.lip.edge.turn)
+pub fn prepare(case: &Case, contact_angle: f64) -> Prepared {
+    Prepared {
+        edge: Edge::new(case.coefficients, contact_angle, case.lip.edge.turn),
+        rim: RimTerms::of(case.coefficients, case.lip.edge.radius),
+    }
+}
+
+/// A stream with its numbers, before it meets an edge.
+#[derive(Debug, Clone, Copy)]
+pub struct Approach {
+    /// The stream.
+    pub stream: Stream,
+    /// Its equivalent sheet.
+    pub film: Film,
+    /// Its numbers at an ideally sharp edge.
+    pub numbers: Numbers,
+    /// Its share of the closed form.
+    pub terms: FilmTerms,
+    /// ln We.
+    pub ln_weber: f64,
+}
+
+impl Approach {
+    /// A stream of `liquid`, with `thickness` (m) as its equivalent sheet.
+    #[must_use]
+    pub fn of(set: &CoefficientSet, liquid: &Liquid, stream: Stream, thickness: f64) -> Self {
+        let film = Film { thickness, speed: stream.speed };
+        let numbers = Numbers::of(film, liquid, 0.0);
+        Self {
+            stream,
+            film,
+            numbers,
+            terms: FilmTerms::of(set, thickness, numbers.reynolds, numbers.froude),
+            ln_weber: libm::log(numbers.weber),
+        }
+    }
+
+    /// Its numbers at an edge of this radius, m.
+    #[must_use]
+    pub fn numbers_at(&self, liquid: &Liquid, radius: f64) -> Numbers {
+        Numbers::of(self.film, liquid, radius)
+    }
+}
+
+/// The stream of `case` at pour rate `flow` (m³/s).
+///
+/// # Errors
+/// When the stream cannot be computed.
+pub fn approach(case: &Case, flow: f64) -> Result<Approach, StreamFault> {
+    let stream = approach_film(&case.lip.section, &case.lip.run, &case.liquid, flow)?;
+    Ok(Approach::of(case.coefficients, &case.liquid, stream, stream.thickness))
 }
 
 /// The balance of `case` at pour rate `flow` (m³/s) on a prepared edge.
 ///
 /// # Errors
 /// When the stream cannot be computed.
-pub fn balance(case: &Case, edge: &Edge, flow: f64) -> Result<Balance, StreamFault> {
+pub fn balance(case: &Case, edge: &Prepared, flow: f64) -> Result<Balance, StreamFault> {
     let stream = approach_film(&case.lip.section, &case.lip.run, &case.liquid, flow)?;
     Ok(weigh(case, edge, stream, stream.thickness))
 }
@@ -51,58 +109,70 @@ pub fn film_numbers(case: &Case, flow: f64) -> Result<Numbers, StreamFault> {
 
 /// The balance for a stream already known, with `thickness` (m) as its equivalent sheet.
 #[must_use]
-pub fn weigh(case: &Case, edge: &Edge, stream: Stream, thickness: f64) -> Balance {
-    let film = Film { thickness, speed: stream.speed };
-    let numbers = Numbers::of(film, &case.liquid, case.lip.edge.radius);
-    let threshold = edge.threshold(case.coefficients, &numbers);
-    let ln_safety_factor = libm::log(numbers.weber) - threshold.ln_critical_weber;
-    Balance { stream, numbers, threshold, ln_safety_factor }
-}
-
-impl Balance {
-    /// Slopes of ln(safety factor) in the primary inputs at this balance.
-    ///
-    /// The threshold's slopes are exact. Those of the stream are exact for the critical section of a sheet lip, else forward differences.
-    ///
-    /// # Errors
-    /// When a neighbouring stream cannot be computed.
-    pub fn slopes(&self, case: &Case, flow: f64) -> Result<Slopes, StreamFault> {
-        let t = &self.threshold;
-        // ln S = ln We − ln We_c with We = ρU²h/γ, Re = ρUh/μ, Fr = U²/(gh), r/h.
-        let by_thickness = 1.0 - t.by_ln_reynolds + t.by_ln_froude + t.by_ln_radius_ratio;
-        let by_speed = 2.0 - t.by_ln_reynolds - 2.0 * t.by_ln_froude;
-        let stream = StreamSlopes::of(case, &self.stream, flow)?;
-        let through = |s: Pair| by_thickness * s.thickness + by_speed * s.speed;
-        let radius = case.lip.edge.radius;
-        let by_kinematic_viscosity = through(stream.kinematic_viscosity);
-        let mut slopes = [0.0; Primary::COUNT];
-        let mut set = |primary: Primary, value: f64| slopes[primary as usize] = value;
-        set(Primary::Density, 1.0 - t.by_ln_reynolds - by_kinematic_viscosity);
-        set(Primary::Viscosity, t.by_ln_reynolds + by_kinematic_viscosity);
-        set(Primary::SurfaceTension, -1.0);
-        set(Primary::ContactAngle, -t.by_contact_angle);
-        set(Primary::EdgeRadius, if radius > 0.0 { -t.by_ln_radius_ratio / radius } else { 0.0 });
-        set(Primary::Turn, -t.by_turn);
-        set(Primary::Section, through(stream.section));
-        set(Primary::Slope, through(stream.slope));
-        set(Primary::RunLength, through(stream.length));
-        set(Primary::Flow, through(stream.flow));
-        set(Primary::Thickness, by_thickness - by_speed);
-        set(Primary::Equivalence, by_thickness);
-        Ok(Slopes(slopes))
+pub fn weigh(case: &Case, edge: &Prepared, stream: Stream, thickness: f64) -> Balance {
+    let approach = Approach::of(case.coefficients, &case.liquid, stream, thickness);
+    let threshold = edge.edge.threshold_for(case.coefficients, &approach.terms, &edge.rim);
+    Balance {
+        stream,
+        numbers: approach.numbers_at(&case.liquid, case.lip.edge.radius),
+        threshold,
+        ln_safety_factor: approach.ln_weber - threshold.ln_critical_weber,
     }
 }
 
-/// Changes of ln thickness and ln speed per unit of an input.
-#[derive(Clone, Copy, Default)]
-struct Pair {
-    thickness: f64,
-    speed: f64,
+/// Changes of ln(safety factor) per unit of ln thickness and of ln speed of the stream.
+///
+/// ln S = ln We − ln We_c with We = ρU²h/γ, Re = ρUh/μ, Fr = U²/(gh), r/h.
+#[must_use]
+pub fn by_film(t: &Threshold) -> Pair {
+    Pair {
+        thickness: 1.0 - t.by_ln_reynolds + t.by_ln_froude + t.by_ln_radius_ratio,
+        speed: 2.0 - t.by_ln_reynolds - 2.0 * t.by_ln_froude,
+    }
 }
 
-struct StreamSlopes {
+/// Slopes of ln(safety factor) in the primary inputs. The threshold's are exact; for the stream's see [`StreamSlopes`].
+#[must_use]
+pub fn slopes(t: &Threshold, stream: &StreamSlopes, radius: f64) -> Slopes {
+    let by = by_film(t);
+    let by_kinematic_viscosity = by.through(stream.kinematic_viscosity);
+    let mut slopes = [0.0; Primary::COUNT];
+    let mut set = |primary: Primary, value: f64| slopes[primary as usize] = value;
+    set(Primary::Density, 1.0 - t.by_ln_reynolds - by_kinematic_viscosity);
+    set(Primary::Viscosity, t.by_ln_reynolds + by_kinematic_viscosity);
+    set(Primary::SurfaceTension, -1.0);
+    set(Primary::ContactAngle, -t.by_contact_angle);
+    set(Primary::EdgeRadius, if radius > 0.0 { -t.by_ln_radius_ratio / radius } else { 0.0 });
+    set(Primary::Turn, -t.by_turn);
+    for primary in Primary::OF_THE_STREAM {
+        set(primary, by.through(stream.of_primary(primary)));
+    }
+    Slopes(slopes)
+}
+
+/// Changes of ln thickness and ln speed per unit of an input.
+#[derive(Debug, Clone, Copy, PartialEq, Default)]
+pub struct Pair {
+    /// Of ln thickness.
+    pub thickness: f64,
+    /// Of ln speed.
+    pub speed: f64,
+}
+
+impl Pair {
+    /// What an input that changes thickness and speed by `change` does.
+    #[must_use]
+    pub fn through(self, change: Self) -> f64 {
+        self.thickness * change.thickness + self.speed * change.speed
+    }
+}
+
+/// How thickness and speed of a stream change with what it depends on: exact for the critical section of a sheet lip, else forward differences.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct StreamSlopes {
     flow: Pair,
-    kinematic_viscosity: Pair,
+    /// Per unit of ln kinematic viscosity.
+    pub kinematic_viscosity: Pair,
     section: Pair,
     slope: Pair,
     length: Pair,
@@ -112,8 +182,11 @@ struct StreamSlopes {
 const STEP: f64 = 1e-4;
 
 impl StreamSlopes {
-    fn of(case: &Case, stream: &Stream, flow: f64) -> Result<Self, StreamFault> {
-        let lip = &case.lip;
+    /// The slopes of `stream`, which `flow` (m³/s) of `liquid` makes on this lip.
+    ///
+    /// # Errors
+    /// When a neighbouring stream cannot be computed.
+    pub fn of(lip: &Lip, liquid: &Liquid, stream: &Stream, flow: f64) -> Result<Self, StreamFault> {
         if let (Section::Sheet { .. }, Control::Brink) = (lip.section, stream.control)
             && stream.depth == stream.critical_depth
         {
@@ -137,8 +210,8 @@ impl StreamSlopes {
         };
         let up = 1.0 + STEP;
         let ln_up = libm::log1p(STEP);
-        let by_flow = differ(&lip.section, &lip.run, &case.liquid, flow * up, ln_up)?;
-        let viscous = Liquid { viscosity: case.liquid.viscosity * up, ..case.liquid };
+        let by_flow = differ(&lip.section, &lip.run, liquid, flow * up, ln_up)?;
+        let viscous = Liquid { viscosity: liquid.viscosity * up, ..*liquid };
         let (wider, section_step) = match lip.section {
             Section::Sheet { width } => (Section::Sheet { width: width * up }, ln_up),
             Section::Vee { included_angle } => (Section::Vee { included_angle: included_angle + STEP }, STEP),
@@ -151,9 +224,29 @@ impl StreamSlopes {
         Ok(Self {
             flow: by_flow,
             kinematic_viscosity: differ(&lip.section, &lip.run, &viscous, flow, ln_up)?,
-            section: differ(&wider, &lip.run, &case.liquid, flow, section_step)?,
-            slope: differ(&lip.section, &steeper, &case.liquid, flow, STEP)?,
-            length: differ(&lip.section, &longer, &case.liquid, flow, length_step)?,
+            section: differ(&wider, &lip.run, liquid, flow, section_step)?,
+            slope: differ(&lip.section, &steeper, liquid, flow, STEP)?,
+            length: differ(&lip.section, &longer, liquid, flow, length_step)?,
         })
+    }
+
+    /// Changes by one of [`Primary::OF_THE_STREAM`]; none by any other.
+    #[must_use]
+    pub fn of_primary(&self, primary: Primary) -> Pair {
+        match primary {
+            Primary::Section => self.section,
+            Primary::Slope => self.slope,
+            Primary::RunLength => self.length,
+            Primary::Flow => self.flow,
+            // At a given pour rate a thicker stream is a slower one; the equivalent sheet is another reading of the same speed.
+            Primary::Thickness => Pair { thickness: 1.0, speed: -1.0 },
+            Primary::Equivalence => Pair { thickness: 1.0, speed: 0.0 },
+            Primary::Density
+            | Primary::Viscosity
+            | Primary::SurfaceTension
+            | Primary::ContactAngle
+            | Primary::EdgeRadius
+            | Primary::Turn => Pair::default(),
+        }
     }
 }

@@ -84,6 +84,9 @@ pub enum Primary {
 impl Primary {
     /// How many there are.
     pub const COUNT: usize = 12;
+    /// Those that act through the stream's thickness and speed alone.
+    pub const OF_THE_STREAM: [Self; 6] =
+        [Self::Section, Self::Slope, Self::RunLength, Self::Flow, Self::Thickness, Self::Equivalence];
 }
 
 /// What an uncertainty comes from.

@@ -1,13 +1,17 @@
 //! The one function that decides a case.
 
 use super::{
-    balance::{Balance, balance, prepare},
+    balance::{Approach, Balance, StreamSlopes, approach, prepare, slopes},
     case::{Case, Input, Primary, Shift, Slopes, Source},
+    doubt::{Doubt, EdgeDoubt, StreamDoubt},
 };
 use crate::physics::{
     numerics::normal_cdf,
-    separation::{closed_form::Reach, numbers::FREE_SHEET_WEBER},
-    stream::StreamFault,
+    separation::{
+        closed_form::{CoefficientSet, Edge, Reach, RimTerms, Threshold},
+        numbers::FREE_SHEET_WEBER,
+    },
+    stream::{Stream, StreamFault},
 };
 
 /// The verdict.
@@ -56,7 +60,7 @@ impl Decision {
     /// Weber number over critical Weber number.
     #[must_use]
     pub fn safety_factor(&self) -> f64 {
-        libm::exp(self.margin)
+        self.balance.numbers.weber / self.balance.threshold.critical_weber
     }
 
     /// The two-sided interval of the safety factor at the case's confidence.
@@ -72,24 +76,13 @@ impl Decision {
         self.balance.numbers.weber >= FREE_SHEET_WEBER
     }
 
-    /// The uncertain inputs that come from the models rather than from the question.
-    fn model_inputs(&self) -> [Input; 2] {
-        let stream = &self.balance.stream;
-        // low..high of the equivalent sheet are read as ± 2 standard uncertainties.
-        let equivalence = libm::log(stream.thickness_high / stream.thickness_low) / 4.0;
-        [
-            Input { source: Source::Stream, shift: Shift::One(Primary::Thickness, STREAM_UNCERTAINTY) },
-            Input { source: Source::Stream, shift: Shift::One(Primary::Equivalence, equivalence) },
-        ]
-    }
-
     /// Variance of m by source: the question's inputs, the stream model (in two parts), the separation model.
     pub fn variances<'a>(&'a self, case: &'a Case) -> impl Iterator<Item = (Source, f64)> + 'a {
         let square = |x: f64| x * x;
         case.inputs
             .iter()
             .copied()
-            .chain(self.model_inputs())
+            .chain(stream_inputs(&self.balance.stream))
             .map(move |input| (input.source, square(self.slopes.effect(&input.shift))))
             .chain([(Source::Model, square(self.reach.standard_uncertainty))])
     }
@@ -99,29 +92,93 @@ impl Decision {
 /// ± 13 % on h, read as two standard uncertainties; most lips pour below that head, so it is used throughout.
 pub const STREAM_UNCERTAINTY: f64 = 0.065;
 
-/// Decides one case. No allocation; every other answer stands on this function.
+/// The uncertain inputs that come from the stream model rather than from the question.
+#[must_use]
+pub fn stream_inputs(stream: &Stream) -> [Input; 2] {
+    // low..high of the equivalent sheet are read as ± 2 standard uncertainties.
+    let equivalence = libm::log(stream.thickness_high / stream.thickness_low) / 4.0;
+    [
+        Input { source: Source::Stream, shift: Shift::One(Primary::Thickness, STREAM_UNCERTAINTY) },
+        Input { source: Source::Stream, shift: Shift::One(Primary::Equivalence, equivalence) },
+    ]
+}
+
+/// What follows once stream and edge are known.
+#[derive(Debug, Clone, Copy)]
+pub struct Judgement {
+    /// Critical Weber number and slopes.
+    pub threshold: Threshold,
+    /// Where the separation model is used outside its range, and its own doubt.
+    pub reach: Reach,
+    /// m = ln(safety factor).
+    pub margin: f64,
+    /// u, standard uncertainty of m.
+    pub standard_uncertainty: f64,
+    /// p = Φ(−m/u).
+    pub dribble_probability: f64,
+    /// The verdict.
+    pub verdict: Verdict,
+}
+
+/// Judges a stream at an edge: the last step of every decision, single or one of many.
+#[inline]
+#[must_use]
+pub fn judge(
+    set: &CoefficientSet,
+    confidence: f64,
+    approach: &Approach,
+    (edge, rim): (&Edge, &RimTerms),
+    (doubt, edge_doubt, stream_doubt): (&Doubt, EdgeDoubt, &StreamDoubt),
+) -> Judgement {
+    let threshold = edge.threshold_for(set, &approach.terms, rim);
+    let reach = edge.reach_for(set, &approach.terms, rim);
+    let margin = approach.ln_weber - threshold.ln_critical_weber;
+    let own = reach.standard_uncertainty * reach.standard_uncertainty;
+    let standard_uncertainty = (doubt.variance(&threshold, edge_doubt, stream_doubt) + own).sqrt();
+    let dribble_probability = normal_cdf(-margin / standard_uncertainty);
+    let free_sheet = approach.numbers.weber >= FREE_SHEET_WEBER;
+    let verdict = verdict(dribble_probability, confidence, free_sheet);
+    Judgement { threshold, reach, margin, standard_uncertainty, dribble_probability, verdict }
+}
+
+/// Decides one case. No allocation; every other answer stands on this function, or on its twin for many cases at once
+/// ([`super::sweep`]), which shares [`judge`] with it.
 ///
 /// # Errors
 /// When the stream at the lip cannot be computed.
 pub fn decide(case: &Case) -> Result<Decision, StreamFault> {
     let edge = prepare(case, case.contact_angle);
-    let balance = balance(case, &edge, case.flow)?;
-    let slopes = balance.slopes(case, case.flow)?;
-    let reach = edge.reach(case.coefficients, &balance.numbers);
-    let mut decision = Decision {
-        verdict: Verdict::Marginal,
-        dribble_probability: 0.5,
-        margin: balance.ln_safety_factor,
-        standard_uncertainty: 0.0,
-        balance,
-        reach,
-        slopes,
-    };
-    decision.standard_uncertainty =
-        decision.variances(case).map(|(_, variance)| variance).sum::<f64>().sqrt();
-    decision.dribble_probability = normal_cdf(-decision.margin / decision.standard_uncertainty);
-    decision.verdict = verdict(decision.dribble_probability, case.confidence.level, decision.free_sheet());
-    Ok(decision)
+    let approach = approach(case, case.flow)?;
+    let stream_slopes = StreamSlopes::of(&case.lip, &case.liquid, &approach.stream, case.flow)?;
+    let radius = case.lip.edge.radius;
+    let (mut doubt, mut edge_doubt) = (Doubt::default(), EdgeDoubt::default());
+    let mut stream_doubt = StreamDoubt::new(&stream_slopes);
+    for input in case.inputs.iter().chain(&stream_inputs(&approach.stream)) {
+        doubt.add(&input.shift);
+        edge_doubt.add(&input.shift, radius);
+        stream_doubt.add(&input.shift, &stream_slopes);
+    }
+    let judged = judge(
+        case.coefficients,
+        case.confidence.level,
+        &approach,
+        (&edge.edge, &edge.rim),
+        (&doubt, edge_doubt, &stream_doubt),
+    );
+    Ok(Decision {
+        verdict: judged.verdict,
+        dribble_probability: judged.dribble_probability,
+        margin: judged.margin,
+        standard_uncertainty: judged.standard_uncertainty,
+        balance: Balance {
+            stream: approach.stream,
+            numbers: approach.numbers_at(&case.liquid, radius),
+            threshold: judged.threshold,
+            ln_safety_factor: judged.margin,
+        },
+        reach: judged.reach,
+        slopes: slopes(&judged.threshold, &stream_slopes, radius),
+    })
 }
 
 fn verdict(probability: f64, confidence: f64, free_sheet: bool) -> Verdict {

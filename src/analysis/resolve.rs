@@ -33,6 +33,23 @@ pub struct Resolved {
     pub assumed: Assumed,
 }
 
+/// Liquid and surface of a question, with their uncertain inputs.
+#[derive(Debug, Clone)]
+pub struct Condition {
+    /// Properties of the liquid, each with its source.
+    pub liquid: Properties,
+    /// The liquid as wetting sees it.
+    pub wetting_liquid: WettingLiquid,
+    /// Contact angles with their sources.
+    pub angles: WettingAngles,
+    /// Which of the angles were assumed from the others.
+    pub assumed: Assumed,
+    /// The angle that counts for this outer face, rad.
+    pub contact_angle: f64,
+    /// Uncertain inputs of liquid and surface.
+    pub inputs: Inputs,
+}
+
 impl Spec {
     /// The case that this question asks about.
     ///
@@ -41,6 +58,39 @@ impl Spec {
     pub fn resolve(&self) -> Result<Resolved, Vec<Fault>> {
         let mut faults = Vec::new();
         let lip = self.resolve_lip(&mut faults);
+        let condition = match self.condition() {
+            Ok(condition) if faults.is_empty() => condition,
+            Ok(_) => return Err(faults),
+            Err(found) => {
+                faults.extend(found);
+                return Err(faults);
+            }
+        };
+        let Condition { liquid, wetting_liquid, angles, assumed, contact_angle, mut inputs } = condition;
+        for input in self.lip_inputs() {
+            // A question has fewer inputs than places for them; a test holds that.
+            let _ = inputs.try_push(input);
+        }
+        let case = Case {
+            lip,
+            liquid: liquid.liquid(),
+            advancing: angles.advancing.angle,
+            receding: angles.receding.angle,
+            contact_angle,
+            flow: self.flow_ml_s * quantity::FLOW.to_si,
+            confidence: Confidence::at(self.confidence),
+            coefficients: self.coefficients,
+            inputs,
+        };
+        Ok(Resolved { case, liquid, wetting_liquid, angles, assumed })
+    }
+
+    /// Liquid and surface of this question: what does not depend on the lip or the pour rate.
+    ///
+    /// # Errors
+    /// Every fault of liquid and surface.
+    pub fn condition(&self) -> Result<Condition, Vec<Fault>> {
+        let mut faults = Vec::new();
         let liquid = resolve_liquid(&self.liquid);
         let wetting_liquid = liquid.as_ref().ok().map(|properties| wetting_liquid(&self.liquid, properties));
         // Contradicting angles are found even where the liquid itself is at fault.
@@ -55,22 +105,24 @@ impl Spec {
             OuterFace::Dry => angles.advancing,
             OuterFace::Wet => angles.receding,
         };
-        let case = Case {
-            lip,
-            liquid: liquid.liquid(),
-            advancing: angles.advancing.angle,
-            receding: angles.receding.angle,
-            contact_angle: counts.angle,
-            flow: self.flow_ml_s * quantity::FLOW.to_si,
-            confidence: Confidence::at(self.confidence),
-            coefficients: self.coefficients,
-            inputs: self.inputs(&liquid, &assumed, counts.standard_uncertainty, counts.angle),
-        };
-        Ok(Resolved { case, liquid, wetting_liquid, angles, assumed })
+        let inputs = self.inputs(&liquid, &assumed, counts.standard_uncertainty, counts.angle);
+        Ok(Condition { liquid, wetting_liquid, angles, assumed, contact_angle: counts.angle, inputs })
+    }
+
+    /// Whether the outer wall falls away from the edge at all: the turn exceeds the rise of the floor.
+    #[must_use]
+    pub fn wall_falls(&self) -> bool {
+        self.slope_deg + self.turn_deg > 0.0
+    }
+
+    /// The lip in SI units, its own contradictions left out ([`Spec::wall_falls`]).
+    #[must_use]
+    pub fn lip(&self) -> Lip {
+        self.resolve_lip(&mut Vec::new())
     }
 
     fn resolve_lip(&self, faults: &mut Vec<Fault>) -> Lip {
-        if self.slope_deg + self.turn_deg <= 0.0 {
+        if !self.wall_falls() {
             let detail = format!(
                 "the floor rises by {}° and the edge turns by {}°, so the outer wall would not fall away from the edge; the turn must exceed the rise",
                 -self.slope_deg, self.turn_deg
@@ -168,7 +220,7 @@ impl Spec {
         }
     }
 
-    /// Every uncertain input of the question. `angle` and `angle_uncertainty` (rad): the contact angle that counts.
+    /// The uncertain inputs of liquid and surface. `angle` and `angle_uncertainty` (rad): the contact angle that counts.
     fn inputs(&self, liquid: &Properties, assumed: &Assumed, angle_uncertainty: f64, angle: f64) -> Inputs {
         let mut inputs = Inputs::new();
         let mut push = |source: Source, shift: Shift| {
@@ -191,27 +243,32 @@ impl Spec {
         };
         push(angle_source, Shift::One(Primary::ContactAngle, angle_uncertainty));
         self.energy_inputs(liquid, angle, &mut push);
-        let mut number = |field: Field, primary: Primary, value: f64, logarithmic: bool| {
+        inputs
+    }
+
+    /// The uncertain inputs of section, radius, turn, slope, length and flow, in this order.
+    #[must_use]
+    pub fn lip_inputs(&self) -> [Input; 6] {
+        let number = |field: Field, primary: Primary, value: f64, logarithmic: bool| {
             let u = standard_uncertainty(self, field, value);
             let by = if logarithmic { u / value } else { u * field.quantity().to_si };
-            push(Source::Field(field), Shift::One(primary, by));
+            Input { source: Source::Field(field), shift: Shift::One(primary, by) }
         };
-        match self.section {
-            SectionSpec::Sheet { width_mm } => number(Field::SheetWidth, Primary::Section, width_mm, true),
-            SectionSpec::Vee { included_angle_deg } => {
-                number(Field::VeeAngle, Primary::Section, included_angle_deg, false);
-            }
-            SectionSpec::Trough { diameter_mm } => {
-                number(Field::TroughDiameter, Primary::Section, diameter_mm, true)
-            }
-            SectionSpec::Tube { bore_mm } => number(Field::TubeBore, Primary::Section, bore_mm, true),
-        }
-        number(Field::EdgeRadius, Primary::EdgeRadius, self.radius_mm, false);
-        number(Field::Turn, Primary::Turn, self.turn_deg, false);
-        number(Field::Slope, Primary::Slope, self.slope_deg, false);
-        number(Field::RunLength, Primary::RunLength, self.length_mm, false);
-        number(Field::Flow, Primary::Flow, self.flow_ml_s, true);
-        inputs
+        let section =
+            |field: Field, value: f64| number(field, Primary::Section, value, field != Field::VeeAngle);
+        [
+            match self.section {
+                SectionSpec::Sheet { width_mm } => section(Field::SheetWidth, width_mm),
+                SectionSpec::Vee { included_angle_deg } => section(Field::VeeAngle, included_angle_deg),
+                SectionSpec::Trough { diameter_mm } => section(Field::TroughDiameter, diameter_mm),
+                SectionSpec::Tube { bore_mm } => section(Field::TubeBore, bore_mm),
+            },
+            number(Field::EdgeRadius, Primary::EdgeRadius, self.radius_mm, false),
+            number(Field::Turn, Primary::Turn, self.turn_deg, false),
+            number(Field::Slope, Primary::Slope, self.slope_deg, false),
+            number(Field::RunLength, Primary::RunLength, self.length_mm, false),
+            number(Field::Flow, Primary::Flow, self.flow_ml_s, true),
+        ]
     }
 
     fn liquid_inputs(&self, properties: &Properties, push: &mut impl FnMut(Source, Shift)) {

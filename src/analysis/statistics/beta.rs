@@ -21,10 +21,10 @@ pub fn ln_beta(a: f64, b: f64) -> f64 {
 }
 
 /// From here on Stirling's series gives full accuracy in seven terms.
-const LARGE: f64 = 15.0;
+pub(super) const LARGE: f64 = 15.0;
 
 /// ln Γ(z) − (z − ½) ln z + z − ½ ln 2π, z ≥ 15.
-fn stirling_rest(z: f64) -> f64 {
+pub(super) fn stirling_rest(z: f64) -> f64 {
     let r = 1.0 / (z * z);
     let terms = [
         1.0 / 12.0,
@@ -48,7 +48,7 @@ pub fn incomplete_beta(a: f64, b: f64, x: f64) -> f64 {
 
 /// I_x(a, b) and 1 − I_x(a, b), each with its own relative accuracy; `rest` is 1 − x, given apart so that it may be
 /// more exact than the difference.
-fn tails(a: f64, b: f64, x: f64, rest: f64) -> (f64, f64) {
+pub(super) fn tails(a: f64, b: f64, x: f64, rest: f64) -> (f64, f64) {
     if x <= 0.0 {
         return (0.0, 1.0);
     }

@@ -165,7 +165,7 @@ fn summary(shares: impl Iterator<Item = (f64, f64)> + Clone) -> Index {
 mod tests {
     use super::*;
 
-    const DESIGN: Design = Design { points: 1024, seed: 1 };
+    const DESIGN: Design = Design { points: 8192, seed: 1 };
 
     #[test]
     fn a_sum_has_no_interactions_and_a_product_has() {

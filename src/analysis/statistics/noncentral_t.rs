@@ -2,6 +2,7 @@
 
 use super::{
     StatisticsFault,
+    beta::{LARGE, stirling_rest},
     normal::{normal_cdf, normal_quantile},
 };
 use crate::physics::numerics::{Bracket, find_root, gauss_legendre_8};
@@ -36,7 +37,7 @@ impl NoncentralT {
         let (from, to) = ((1.0 - REACH * spread).max(0.0), 1.0 + REACH * spread);
         // ln of 2 (ν/2)^(ν/2)/Γ(ν/2) s^(ν−1) exp(−νs²/2), around s = 1 to keep digits.
         let half = 0.5 * degrees;
-        let constant = core::f64::consts::LN_2 + half * (libm::log(half) - 1.0) - libm::lgamma(half);
+        let constant = ln_density_scale(half);
         let density = |s: f64| {
             let excess = (s - 1.0) * (s + 1.0);
             libm::exp(constant + (degrees - 1.0) * libm::log(s) - half * excess)
@@ -96,6 +97,16 @@ impl NoncentralT {
         }
         let tolerance = 1e-13 * (1.0 + guess.abs());
         find_root(excess, Bracket { low, high }, tolerance).ok_or(StatisticsFault::NotConverged { what })
+    }
+}
+
+/// ln of 2 (ν/2)^(ν/2) e^(−ν/2)/Γ(ν/2), with `half` = ν/2; by Stirling's series where the terms are large and nearly cancel.
+fn ln_density_scale(half: f64) -> f64 {
+    use core::f64::consts::{LN_2, TAU};
+    if half < LARGE {
+        LN_2 + half * (libm::log(half) - 1.0) - libm::lgamma(half)
+    } else {
+        LN_2 + 0.5 * libm::log(half / TAU) - stirling_rest(half)
     }
 }
 

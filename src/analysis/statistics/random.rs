@@ -75,7 +75,7 @@ mod tests {
     }
 
     /// What this generator gave when it was chosen.
-    const PINNED: u64 = 0;
+    const PINNED: u64 = 4596467222687235476;
 
     #[test]
     fn moments_are_those_of_the_uniform_distribution() {

@@ -1,12 +1,12 @@
 //! Student's t distribution.
 
-use super::{StatisticsFault, beta::{beta_quantile, incomplete_beta}};
+use super::{StatisticsFault, beta::{beta_quantile, tails}};
 
 /// P(T ≤ `t`) with `degrees` of freedom (> 0).
 #[must_use]
 pub fn t_cdf(t: f64, degrees: f64) -> f64 {
-    let x = degrees / (degrees + t * t);
-    let tail = 0.5 * incomplete_beta(0.5 * degrees, 0.5, x);
+    let whole = degrees + t * t;
+    let tail = 0.5 * tails(0.5 * degrees, 0.5, degrees / whole, t * t / whole).0;
     if t < 0.0 { tail } else { 1.0 - tail }
 }
 

@@ -79,6 +79,8 @@ impl CoefficientSet {
 /// ln We_c and its partial derivatives.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Threshold {
+    /// The critical Weber number.
+    pub critical_weber: f64,
     /// ln of the critical Weber number.
     pub ln_critical_weber: f64,
     /// ∂ ln We_c / ∂ ln(r/h).
@@ -102,6 +104,8 @@ pub struct Edge {
     cling: f64,
     by_contact_angle: f64,
     by_turn: f64,
+    /// Variance of ln We_c by angle and turn outside the set's range.
+    doubt: f64,
 }
 
 impl Edge {
@@ -115,12 +119,16 @@ impl Edge {
         let scale = libm::pow(bend, -set.turn_exponent);
         let per_wetting = libm::pow(wetting, set.wetting_exponent - 1.0);
         let cling = per_wetting * wetting * scale;
+        let beyond_turn = (set.turn[0] - turn).max(turn - set.turn[1]).max(0.0) / (15.0 * DEGREE);
+        let steep_angle = (contact_angle - 130.0 * DEGREE).max(0.0) / (20.0 * DEGREE);
+        let square = |x: f64| x * x;
         Self {
             contact_angle,
             turn,
             cling,
             by_contact_angle: -set.wetting_exponent * per_wetting * sin_theta * scale,
             by_turn: -set.turn_exponent * cling * sin_alpha / bend,
+            doubt: square(PER_15_DEGREES * beyond_turn) + square(AT_150_DEGREES * steep_angle),
         }
     }
 
@@ -133,23 +141,29 @@ impl Edge {
     /// The threshold for a stream with these numbers.
     #[must_use]
     pub fn threshold(&self, set: &CoefficientSet, numbers: &Numbers) -> Threshold {
-        let ln_radius = libm::log(numbers.radius_ratio);
-        let ln_viscous = LN_100 - libm::log(numbers.reynolds);
-        let ln_froude = libm::log(numbers.froude);
-        let [a, b, c] = set.radius;
-        let [d, e, f, g, k] = set.gravity;
-        let radius = a * libm::exp(b * ln_radius + c * ln_viscous);
-        let fall = libm::exp(g * ln_viscous - k * ln_froude);
-        let blunt = e * libm::exp(f * ln_radius) * fall;
-        let gravity = d * fall + blunt;
+        let (film, rim) = apart(set, numbers);
+        self.threshold_for(set, &film, &rim)
+    }
+
+    /// The threshold for a stream and a rounding whose shares of the closed form are known.
+    #[must_use]
+    pub fn threshold_for(&self, set: &CoefficientSet, film: &FilmTerms, rim: &RimTerms) -> Threshold {
+        let [_, b, c] = set.radius;
+        let [_, _, f, g, k] = set.gravity;
+        let radius = film.radius * rim.power;
+        let blunt = film.blunt * rim.gravity_power;
+        let gravity = film.fall + blunt;
         let bracket = 1.0 + radius + gravity;
         let total = 1.0 + self.cling * bracket;
-        let share = self.cling / total;
+        let per_total = 1.0 / total;
+        let share = self.cling * per_total;
+        let critical_weber = total / set.momentum;
         Threshold {
-            ln_critical_weber: libm::log(total / set.momentum),
+            critical_weber,
+            ln_critical_weber: libm::log(critical_weber),
             by_ln_radius_ratio: share * (b * radius + f * blunt),
-            by_contact_angle: self.by_contact_angle * bracket / total,
-            by_turn: self.by_turn * bracket / total,
+            by_contact_angle: self.by_contact_angle * bracket * per_total,
+            by_turn: self.by_turn * bracket * per_total,
             by_ln_reynolds: -share * (c * radius + g * gravity),
             by_ln_froude: -share * k * gravity,
         }
@@ -158,39 +172,114 @@ impl Edge {
     /// How far outside its range the set is used here, and the standard uncertainty of ln We_c that follows.
     #[must_use]
     pub fn reach(&self, set: &CoefficientSet, numbers: &Numbers) -> Reach {
-        let doublings = |ratio: f64| libm::log2(ratio).max(0.0);
+        let (film, rim) = apart(set, numbers);
+        self.reach_for(set, &film, &rim)
+    }
+
+    /// [`Edge::reach`] for a stream and a rounding whose shares of the closed form are known.
+    #[must_use]
+    pub fn reach_for(&self, set: &CoefficientSet, film: &FilmTerms, rim: &RimTerms) -> Reach {
         // An ideally sharp edge is infinitely many halvings below the range, yet the limit r/h → 0 is known and nearly reached there; so the
         // ratio is offset and the term levels off at log2(6) halvings (own judgement).
         let [r_low, r_high] = set.radius_ratio;
+        let ratio = rim.radius / film.thickness;
         let offset = 0.2 * r_low;
-        let radius_ratio = doublings((r_low + offset) / (numbers.radius_ratio + offset))
-            .max(doublings(numbers.radius_ratio / r_high));
-        let [re_low, re_high] = set.reynolds;
-        let reynolds = doublings(re_low / numbers.reynolds).max(doublings(numbers.reynolds / re_high));
-        let froude = doublings(set.froude_minimum / numbers.froude);
-        let turn = (set.turn[0] - self.turn).max(self.turn - set.turn[1]).max(0.0) / (15.0 * DEGREE);
-        let steep_angle = (self.contact_angle - 130.0 * DEGREE).max(0.0) / (20.0 * DEGREE);
-        let beyond = [
-            PER_DOUBLING * radius_ratio,
-            PER_DOUBLING * reynolds,
-            PER_DOUBLING * froude,
-            PER_15_DEGREES * turn,
-            AT_150_DEGREES * steep_angle,
-        ];
-        let square = |x: f64| x * x;
-        let variance = square(set.model_uncertainty) + beyond.iter().map(|x| square(*x)).sum::<f64>();
-        let contact_angle_outside =
-            self.contact_angle < set.contact_angle[0] || self.contact_angle > set.contact_angle[1];
+        let halvings = if ratio < r_low {
+            libm::log2((r_low + offset) / (ratio + offset))
+        } else if ratio > r_high {
+            libm::log2(ratio / r_high)
+        } else {
+            0.0
+        };
+        let radius_ratio = PER_DOUBLING * halvings;
+        let variance = film.doubt + self.doubt + radius_ratio * radius_ratio;
         Reach {
             standard_uncertainty: variance.sqrt(),
-            radius_ratio: numbers.radius_ratio < r_low || numbers.radius_ratio > r_high,
-            reynolds_low: numbers.reynolds < re_low,
-            reynolds_high: numbers.reynolds > re_high,
-            froude: froude > 0.0,
-            turn: turn > 0.0,
-            contact_angle: contact_angle_outside,
+            radius_ratio: ratio < r_low || ratio > r_high,
+            reynolds_low: film.reynolds < set.reynolds[0],
+            reynolds_high: film.reynolds > set.reynolds[1],
+            froude: film.froude < set.froude_minimum,
+            turn: self.turn < set.turn[0] || self.turn > set.turn[1],
+            contact_angle: self.contact_angle < set.contact_angle[0]
+                || self.contact_angle > set.contact_angle[1],
         }
     }
+}
+
+/// The stream's share of the closed form: the same whatever edge the stream meets.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct FilmTerms {
+    /// h, in the unit of the rounding's radius.
+    thickness: f64,
+    reynolds: f64,
+    froude: f64,
+    /// a h^−b (100/Re)^c
+    radius: f64,
+    /// d (100/Re)^g / Fr^k
+    fall: f64,
+    /// e h^−f (100/Re)^g / Fr^k
+    blunt: f64,
+    /// Variance of ln We_c: the set's own and that of Re and Fr outside its range.
+    doubt: f64,
+}
+
+impl FilmTerms {
+    /// The share of a film of this thickness (in any unit, that of the radius it will meet), Reynolds and Froude number.
+    #[must_use]
+    pub fn of(set: &CoefficientSet, thickness: f64, reynolds: f64, froude: f64) -> Self {
+        let ln_thickness = libm::log(thickness);
+        let ln_viscous = LN_100 - libm::log(reynolds);
+        let [a, b, c] = set.radius;
+        let [d, e, f, g, k] = set.gravity;
+        let fall = g * ln_viscous - k * libm::log(froude);
+        let [low, high] = set.reynolds;
+        let by_reynolds = PER_DOUBLING * doublings(low / reynolds).max(doublings(reynolds / high));
+        let by_froude = PER_DOUBLING * doublings(set.froude_minimum / froude);
+        Self {
+            thickness,
+            reynolds,
+            froude,
+            radius: a * libm::exp(c * ln_viscous - b * ln_thickness),
+            fall: d * libm::exp(fall),
+            blunt: e * libm::exp(fall - f * ln_thickness),
+            doubt: set.model_uncertainty * set.model_uncertainty
+                + by_reynolds * by_reynolds
+                + by_froude * by_froude,
+        }
+    }
+}
+
+/// The rounding's share of the closed form: the same whatever stream meets it.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct RimTerms {
+    radius: f64,
+    /// r^b
+    power: f64,
+    /// r^f
+    gravity_power: f64,
+}
+
+impl RimTerms {
+    /// The share of a rounding of this radius (in the unit of the film's thickness); 0 is ideally sharp.
+    #[must_use]
+    pub fn of(set: &CoefficientSet, radius: f64) -> Self {
+        let ln_radius = libm::log(radius);
+        Self {
+            radius,
+            power: libm::exp(set.radius[1] * ln_radius),
+            gravity_power: libm::exp(set.gravity[2] * ln_radius),
+        }
+    }
+}
+
+/// Film and rounding of these numbers, measured in film thicknesses.
+fn apart(set: &CoefficientSet, numbers: &Numbers) -> (FilmTerms, RimTerms) {
+    (FilmTerms::of(set, 1.0, numbers.reynolds, numbers.froude), RimTerms::of(set, numbers.radius_ratio))
+}
+
+/// How many times 2 goes into a ratio above 1.
+fn doublings(ratio: f64) -> f64 {
+    if ratio > 1.0 { libm::log2(ratio) } else { 0.0 }
 }
 
 /// Where a use of the closed form lies outside its range, and how unsure that makes it.

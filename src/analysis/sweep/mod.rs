@@ -1,0 +1,188 @@
+//! Sweeps: one question at many points, over one to four of its fields.
+//!
+//! This is the twin of [`decide`](super::decision::decide) for many cases at once. It computes nothing of its own: every layer of a decision comes
+//! from the same functions ([`Approach`](super::balance::Approach), [`StreamSlopes`](super::balance::StreamSlopes),
+//! [`judge`](super::decision::judge)), but once for each distinct combination of the fields that it depends on. A test holds both equal
+//! point by point.
+
+mod axis;
+mod block;
+mod layers;
+mod output;
+mod point;
+
+use std::{
+    cell::OnceCell,
+    ops::Range,
+    sync::atomic::{AtomicBool, Ordering},
+};
+
+use rayon::prelude::*;
+
+pub use axis::{Axis, MOST_AXES, Values};
+pub use block::{Block, Column};
+pub use output::Output;
+
+use self::{
+    layers::{Desk, Ground, Layers, Places},
+    point::Point,
+};
+use super::{case::Confidence, decision::judge, doubt::EdgeDoubt, spec::Spec};
+
+/// Points computed in one go. Neither results nor their order depend on it.
+pub const CHUNK: usize = 1 << 14;
+
+/// Points between two looks at whether the work is still wanted.
+const LOOK_EVERY: usize = 64;
+
+/// The work was given up because nobody wants it any more.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, thiserror::Error)]
+#[error("the work was cancelled")]
+pub struct Cancelled;
+
+/// One question at many points. The first axis is the slowest.
+#[derive(Debug)]
+pub struct Sweep {
+    ground: Ground,
+    layers: Layers,
+    confidence: Confidence,
+    rows: usize,
+}
+
+impl Sweep {
+    /// Prepares a sweep of `base` over `axes`, of which there must be one to four; each field must be one that the base has. Values are taken as
+    /// they are: their ranges are checked where they come from.
+    ///
+    /// # Errors
+    /// [`Cancelled`] once the flag is set.
+    pub fn new(base: Spec, axes: Vec<Axis>, cancelled: &AtomicBool) -> Result<Self, Cancelled> {
+        let rows = axes.iter().map(Axis::len).fold(1, usize::saturating_mul);
+        let ground = Ground { base, axes };
+        let layers = Layers::new(&ground, rows, cancelled)?;
+        Ok(Self { layers, confidence: Confidence::at(base.confidence), rows, ground })
+    }
+
+    /// How many points there are.
+    #[must_use]
+    pub const fn rows(&self) -> usize {
+        self.rows
+    }
+
+    /// The axes, slowest first.
+    #[must_use]
+    pub fn axes(&self) -> &[Axis] {
+        &self.ground.axes
+    }
+
+    /// The points `rows`, on this thread.
+    ///
+    /// # Errors
+    /// [`Cancelled`] once the flag is set.
+    pub fn chunk(
+        &self,
+        rows: Range<usize>,
+        outputs: &[Output],
+        cancelled: &AtomicBool,
+    ) -> Result<Block, Cancelled> {
+        let axes = &self.ground.axes;
+        let mut block = Block::new(axes.len(), outputs, rows.len());
+        let fastest = axes.len().saturating_sub(1);
+        let length = axes.last().map_or(1, Axis::len);
+        let mut desk = Desk::default();
+        let mut row = rows.start;
+        while row < rows.end {
+            if cancelled.load(Ordering::Relaxed) {
+                return Err(Cancelled);
+            }
+            let places = self.places(row);
+            let run = (length - places[fastest]).min(rows.end - row).min(LOOK_EVERY);
+            self.run(places, fastest, run, outputs, &mut desk, &mut block);
+            row += run;
+        }
+        Ok(block)
+    }
+
+    /// All the points `rows`, on all threads of the current pool.
+    ///
+    /// # Errors
+    /// [`Cancelled`] once the flag is set.
+    pub fn block(
+        &self,
+        rows: Range<usize>,
+        outputs: &[Output],
+        cancelled: &AtomicBool,
+    ) -> Result<Block, Cancelled> {
+        let starts: Vec<usize> = rows.clone().step_by(CHUNK).collect();
+        let chunks = starts
+            .into_par_iter()
+            .map(|start| self.chunk(start..(start + CHUNK).min(rows.end), outputs, cancelled))
+            .collect::<Result<Vec<Block>, Cancelled>>()?;
+        let mut whole = Block::new(self.ground.axes.len(), outputs, rows.len());
+        for chunk in chunks {
+            whole.append(chunk);
+        }
+        Ok(whole)
+    }
+
+    fn places(&self, row: usize) -> Places {
+        let mut places = [0; MOST_AXES];
+        let mut rest = row;
+        for (place, axis) in places.iter_mut().zip(&self.ground.axes).rev() {
+            *place = rest % axis.len();
+            rest /= axis.len();
+        }
+        places
+    }
+
+    /// `run` points along the fastest axis.
+    fn run(
+        &self,
+        mut places: Places,
+        fastest: usize,
+        run: usize,
+        outputs: &[Output],
+        desk: &mut Desk,
+        block: &mut Block,
+    ) {
+        let Self { ground, layers, confidence, .. } = self;
+        let first = places[fastest];
+        for (i, (axis, values)) in ground.axes.iter().zip(&mut block.axes).enumerate() {
+            if i == fastest {
+                values.extend((first..first + run).map(|place| axis.at(place)));
+            } else {
+                values.resize(values.len() + run, axis.at(places[i]));
+            }
+        }
+        let mut keys = layers.keys(&places);
+        let steps = layers.steps(fastest);
+        let set = ground.base.coefficients;
+        for step in 0..run {
+            places[fastest] = first + step;
+            match layers.parts(ground, desk, &places, &keys) {
+                Ok(parts) => {
+                    let judged = judge(
+                        set,
+                        confidence.level,
+                        &parts.stream.approach,
+                        (&parts.edge.edge, &parts.rim.rim),
+                        (
+                            &parts.condition.doubt,
+                            EdgeDoubt { turn: parts.edge.doubt, radius: parts.rim.doubt },
+                            &parts.stream.doubt,
+                        ),
+                    );
+                    let point = Point {
+                        parts,
+                        judged,
+                        two_sided: confidence.two_sided,
+                        spec: &|| ground.spec(&places),
+                        flows: OnceCell::new(),
+                    };
+                    block.push(outputs, &point);
+                }
+                Err(code) => block.push_fault(code),
+            }
+            keys.advance(&steps);
+        }
+    }
+}
