@@ -5,4 +5,5 @@
 mod facts;
 mod hydraulics;
 mod liquids;
+mod statistics;
 mod wetting;

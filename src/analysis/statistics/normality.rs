@@ -123,7 +123,8 @@ fn royston_weights(count: usize) -> Vec<f64> {
 }
 
 /// The p-value of W for a sample of `count`.
-fn shapiro_wilk_p(w: f64, count: usize) -> f64 {
+#[must_use]
+pub fn shapiro_wilk_p(w: f64, count: usize) -> f64 {
     use core::f64::consts::{FRAC_PI_3, PI};
     if count == 3 {
         return (6.0 / PI * (libm::asin(w.sqrt()) - FRAC_PI_3)).clamp(0.0, 1.0);

@@ -5,6 +5,8 @@
 //! (Hasofer & Lind 1974, J. Eng. Mech. Div. 100, 111) is only where sampling is centred: Φ(−β) misses curvature and
 //! further branches, so it is never reported as the probability.
 
+use super::{normal::quick_quantile, random::Sequence};
+
 /// A point on the limit state that is nearer to the origin than its neighbours.
 #[derive(Debug, Clone, PartialEq)]
 pub struct ProbablePoint {
@@ -85,8 +87,9 @@ fn gradient(limit_state: &mut impl FnMut(&[f64]) -> Option<f64>, at: &[f64]) -> 
         .collect()
 }
 
-/// The most probable points found from the origin and from ±3 standard deviations along every axis, nearest first;
-/// points nearer than half a standard deviation to one already known are the same.
+/// The most probable points found from the origin, from ±3 standard deviations along every axis and from as far in
+/// sixteen random directions, nearest first; points nearer than half a standard deviation to one already known are the
+/// same.
 ///
 /// Several branches need several starts; no number of starts makes sure that all are found, so whoever samples around
 /// these points must not exclude the rest of the space.
@@ -101,6 +104,12 @@ pub fn probable_points(
             start[i] = side;
             starts.push(start);
         }
+    }
+    let mut numbers = Sequence::new(0, u64::MAX).from(0);
+    for _ in 0..16 {
+        let direction: Vec<f64> = (0..inputs).map(|_| quick_quantile(numbers.next_open())).collect();
+        let length = dot(&direction, &direction).sqrt();
+        starts.push(direction.iter().map(|x| 3.0 * x / length).collect());
     }
     let mut found: Vec<ProbablePoint> = Vec::new();
     for start in &starts {
@@ -240,10 +249,7 @@ impl WeightedCount {
 
 #[cfg(test)]
 mod tests {
-    use super::super::{
-        normal::{normal_cdf, quick_quantile},
-        random::Sequence,
-    };
+    use super::super::normal::normal_cdf;
     use super::*;
 
     fn sample(g: &mut impl FnMut(&[f64]) -> Option<f64>, inputs: usize, draws: u64) -> WeightedCount {
