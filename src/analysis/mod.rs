@@ -19,5 +19,7 @@ pub mod resolve;
 pub mod spec;
 pub mod statistics;
 pub mod sweep;
+pub mod tolerance;
 pub mod uncertainty;
 pub mod warnings;
+pub mod watch;
