@@ -8,6 +8,7 @@ pub mod balance;
 pub mod case;
 pub mod cautions;
 pub mod decision;
+pub mod design;
 pub mod doubt;
 pub mod evaluation;
 pub mod fault;

@@ -255,7 +255,7 @@ impl Search<'_> {
 }
 
 /// `x` rounded to `digits` significant digits in the direction of `target`.
-fn round_towards(x: f64, target: f64, digits: i32) -> f64 {
+pub(super) fn round_towards(x: f64, target: f64, digits: i32) -> f64 {
     if x == 0.0 {
         return 0.0;
     }

@@ -40,6 +40,13 @@ impl ModelAnswer {
         hash.update(&bytes);
         Self { version: VERSION, coefficients, fingerprint: hexadecimal(&hash.finalize()) }
     }
+
+    /// The same as a dictionary (RFC 9651), for the head of an answer that has no other place for it.
+    #[must_use]
+    pub fn dictionary(&self) -> String {
+        let Self { version, coefficients, fingerprint } = self;
+        format!("version=\"{version}\", coefficients=\"{coefficients}\", fingerprint=\"{fingerprint}\"")
+    }
 }
 
 /// SHA-256 over everything the catalogue says of liquids and surfaces.

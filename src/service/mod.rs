@@ -7,6 +7,7 @@
 pub mod api;
 pub mod body;
 pub mod contract;
+pub mod events;
 pub mod explain;
 pub mod fingerprint;
 pub mod heavy;
@@ -18,6 +19,7 @@ pub mod router;
 pub mod run;
 pub mod settings;
 pub mod state;
+pub mod table;
 pub mod telemetry;
 
 pub use router::{app, openapi_json};

@@ -10,6 +10,15 @@ use super::problem::{Problem, ProblemKind};
 /// The media type of JSON.
 pub const JSON: &str = "application/json";
 
+/// The media type of comma-separated values (RFC 4180).
+pub const CSV: &str = "text/csv";
+
+/// The media type of an Arrow IPC stream.
+pub const ARROW: &str = "application/vnd.apache.arrow.stream";
+
+/// The media type of server-sent events.
+pub const EVENTS: &str = "text/event-stream";
+
 /// Appended inside the quotes of an entity tag when the answer is compressed: a strong tag may not be shared by
 /// two encodings (RFC 9110, 8.8.1).
 pub const GZIP_TAG: &str = "-gzip";

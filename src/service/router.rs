@@ -10,7 +10,8 @@ use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
 use super::api::{
-    batch, contact_angles, docs, evaluations, health, liquids, metrics, problems, surfaces, version,
+    batch, contact_angles, designs, docs, evaluations, health, liquids, metrics, problems, surfaces, sweeps,
+    version,
 };
 use super::contract;
 use super::layers::House;
@@ -22,6 +23,8 @@ fn resources() -> OpenApiRouter<Shared> {
     OpenApiRouter::with_openapi(contract::ground())
         .routes(routes!(evaluations::evaluate))
         .routes(routes!(batch::evaluate_batch))
+        .routes(routes!(sweeps::sweep))
+        .routes(routes!(designs::design))
         .routes(routes!(contact_angles::contact_angles))
         .routes(routes!(liquids::list_liquids))
         .routes(routes!(liquids::liquid))

@@ -82,6 +82,13 @@ impl Server {
         assert!(sent.success());
     }
 
+    /// A line of the process's memory, in MB.
+    pub fn memory_mb(&self, what: &str) -> f64 {
+        let status = std::fs::read_to_string(format!("/proc/{}/status", self.child.id())).unwrap();
+        let line = status.lines().find(|line| line.starts_with(what)).unwrap();
+        line.split_whitespace().nth(1).unwrap().parse::<f64>().unwrap() / 1024.0
+    }
+
     pub fn wait(&mut self) -> (ExitStatus, Duration) {
         let started = Instant::now();
         loop {

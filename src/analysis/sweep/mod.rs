@@ -124,6 +124,13 @@ impl Sweep {
         Ok(whole)
     }
 
+    /// The values of one axis at the points `rows`.
+    #[must_use]
+    pub fn axis_values(&self, axis: usize, rows: Range<usize>) -> Vec<f64> {
+        let Some(values) = self.ground.axes.get(axis) else { return Vec::new() };
+        rows.map(|row| values.at(self.places(row)[axis])).collect()
+    }
+
     fn places(&self, row: usize) -> Places {
         let mut places = [0; MOST_AXES];
         let mut rest = row;

@@ -3,7 +3,7 @@
 use super::{spread::Drawn, trial::Trial};
 use crate::analysis::{
     statistics::indices::{self, Design, Index},
-    watch::{GivenUp, Watch},
+    watch::{Cancelled, Watch},
 };
 
 pub use crate::analysis::statistics::indices::MOST_INPUTS;
@@ -16,8 +16,8 @@ pub(super) fn drivers(
     start: &Trial<'_>,
     drawn: &[Drawn],
     seed: u64,
-    watch: &Watch,
-) -> Result<Option<Vec<Index>>, GivenUp> {
+    watch: Watch<'_>,
+) -> Result<Option<Vec<Index>>, Cancelled> {
     // Both halves of the seed count.
     let design = Design { points: INDEX_POINTS, seed: (seed ^ (seed >> 32)) as u32 };
     let make = || {
@@ -30,7 +30,7 @@ pub(super) fn drivers(
             trial.margin(&values)
         }
     };
-    let found = indices::indices(drawn.len(), design, make, |runs| watch.advance(runs));
+    let found = indices::indices(drawn.len(), design, make, |runs| watch.advance(runs as usize));
     watch.look()?;
     Ok(found)
 }

@@ -27,7 +27,7 @@ use super::{
     spec::Spec,
     statistics::{StatisticsFault, indices::Index},
     warnings::warnings,
-    watch::{GivenUp, Watch},
+    watch::{Cancelled, Watch},
 };
 
 /// A field that is drawn.
@@ -84,13 +84,13 @@ pub enum Failure {
     Base(Vec<Fault>),
     /// A statistic that could not be computed: a fault of the service.
     Statistics(StatisticsFault),
-    /// Nobody waits for it any more.
-    GivenUp,
+    /// Nobody wants the result any more.
+    Cancelled,
 }
 
-impl From<GivenUp> for Failure {
-    fn from(_: GivenUp) -> Self {
-        Self::GivenUp
+impl From<Cancelled> for Failure {
+    fn from(_: Cancelled) -> Self {
+        Self::Cancelled
     }
 }
 
@@ -127,11 +127,17 @@ impl Study {
         self.varying.iter().enumerate().filter_map(outside).collect()
     }
 
+    /// How much work a study is, in trials: what progress is counted in.
+    #[must_use]
+    pub fn work(&self) -> usize {
+        self.trials as usize + INDEX_POINTS as usize * (self.varying.len() + 2)
+    }
+
     /// Runs the study.
     ///
     /// # Errors
-    /// Every fault of the spreads and of the question; too many trials that make no case; given up.
-    pub fn run(&self, watch: &Watch) -> Result<Outcome, Failure> {
+    /// Every fault of the spreads and of the question; too many trials that make no case; cancelled.
+    pub fn run(&self, watch: Watch<'_>) -> Result<Outcome, Failure> {
         let faults = self.faults();
         if !faults.is_empty() {
             return Err(Failure::Varying(faults));
@@ -141,9 +147,6 @@ impl Study {
         let drawn: Vec<Drawn> =
             self.varying.iter().filter_map(|v| Drawn::new(&v.spread, &v.field.quantity())).collect();
         let start = Trial::new(&self.base, &fields).map_err(Failure::Base)?;
-        let wanted = u64::from(INDEX_POINTS) * (fields.len() as u64 + 2);
-        watch.expect(self.trials + wanted);
-
         let trials = Trials::run(&start, &drawn, self.trials, self.seed, watch)?;
         trials.refuse_when_too_few(&start)?;
         let (decided, model_doubt) = self.at_means(&drawn)?;

@@ -10,7 +10,7 @@ use crate::analysis::{
         random::Sequence,
         rare::{Mixture, WeightedCount, probable_points},
     },
-    watch::{GivenUp, Watch},
+    watch::{Cancelled, Watch},
 };
 
 /// How the interval of a rate was found.
@@ -64,7 +64,7 @@ impl<'a> Rates<'a> {
         drawn: &[Drawn],
         seed: u64,
         confidence: f64,
-        watch: &Watch,
+        watch: Watch<'_>,
     ) -> Result<Self, Failure> {
         let margins = trials.margins.as_slice();
         let events = count_below(margins, 0.0);
@@ -130,8 +130,8 @@ impl Weighted {
         start: &Trial<'_>,
         drawn: &[Drawn],
         seed: u64,
-        watch: &Watch,
-    ) -> Result<Option<Self>, GivenUp> {
+        watch: Watch<'_>,
+    ) -> Result<Option<Self>, Cancelled> {
         let inputs = drawn.len();
         let mut trial = start.clone();
         let mut values = vec![0.0; inputs];
@@ -169,7 +169,7 @@ impl Weighted {
                 }
                 Ok(part)
             })
-            .collect::<Result<_, GivenUp>>()?;
+            .collect::<Result<_, Cancelled>>()?;
         Ok(Some(Self { draws: parts.concat() }))
     }
 

@@ -6,7 +6,7 @@ use super::{Failure, MOST_OUTSIDE, spread::Drawn, trial::Trial};
 use crate::analysis::{
     fault::Fault,
     statistics::random::Sequence,
-    watch::{GivenUp, Watch},
+    watch::{Cancelled, Watch},
 };
 
 /// Trials worked on in one piece. Neither results nor their order depend on it.
@@ -31,8 +31,8 @@ impl Trials {
         drawn: &[Drawn],
         count: u64,
         seed: u64,
-        watch: &Watch,
-    ) -> Result<Self, GivenUp> {
+        watch: Watch<'_>,
+    ) -> Result<Self, Cancelled> {
         let sequence = Sequence::new(seed, PLAIN_STREAM);
         let inputs = drawn.len();
         let pieces = count.div_ceil(AT_A_TIME);
@@ -59,10 +59,9 @@ impl Trials {
                         }
                     }
                 }
-                watch.advance(to - from);
-                Ok(part)
+                watch.advance((to - from) as usize).then_some(part).ok_or(Cancelled)
             })
-            .collect::<Result<_, GivenUp>>()?;
+            .collect::<Result<_, Cancelled>>()?;
         let mut whole = Self { margins: Vec::with_capacity(count as usize), left_out: 0, example: None };
         for part in done {
             whole.margins.extend_from_slice(&part.margins);

@@ -2,9 +2,11 @@
 
 pub mod batch;
 pub mod contact_angles;
+pub mod designs;
 pub mod docs;
 pub mod evaluations;
 pub mod health;
+mod inside;
 pub mod lip;
 pub mod liquid;
 pub mod liquids;
@@ -15,6 +17,7 @@ pub mod property;
 pub mod quantity;
 pub mod surface;
 pub mod surfaces;
+pub mod sweeps;
 pub mod version;
 
 use http::HeaderValue;

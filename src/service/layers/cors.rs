@@ -9,7 +9,7 @@ const ALLOWED_METHODS: HeaderValue = HeaderValue::from_static("GET, HEAD, POST, 
 const ALLOWED_HEADERS: HeaderValue =
     HeaderValue::from_static("accept, authorization, content-type, if-none-match, traceparent, x-request-id");
 const EXPOSED_HEADERS: HeaderValue =
-    HeaderValue::from_static("allow, etag, location, retry-after, server-timing, x-request-id");
+    HeaderValue::from_static("allow, etag, location, result-model, retry-after, server-timing, x-request-id");
 /// Browsers cap it at two hours at most.
 const PREFLIGHT_SECONDS: HeaderValue = HeaderValue::from_static("7200");
 

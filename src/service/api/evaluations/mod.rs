@@ -7,7 +7,7 @@ use axum::response::Response;
 use http::{HeaderMap, HeaderValue, header};
 
 pub use answer::EvaluationAnswer;
-pub use request::{EXAMPLE, EvaluationRequest};
+pub use request::{EXAMPLE, EvaluationRequest, PourRequest};
 
 use crate::{
     analysis::{evaluation, fault::Fault},
