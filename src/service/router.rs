@@ -10,7 +10,7 @@ use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
 use super::api::{
-    batch, contact_angles, designs, docs, evaluations, health, liquids, metrics, problems, surfaces, sweeps,
+    batch, contact_angles, designs, docs, evaluations, health, liquids, metrics, problems, surfaces, tolerances, sweeps,
     version,
 };
 use super::contract;
@@ -25,6 +25,7 @@ fn resources() -> OpenApiRouter<Shared> {
         .routes(routes!(batch::evaluate_batch))
         .routes(routes!(sweeps::sweep))
         .routes(routes!(designs::design))
+        .routes(routes!(tolerances::tolerances))
         .routes(routes!(contact_angles::contact_angles))
         .routes(routes!(liquids::list_liquids))
         .routes(routes!(liquids::liquid))

@@ -104,27 +104,33 @@ impl From<StatisticsFault> for Failure {
 /// the request is refused; up to it the spread is cut there, those trials are left out, and the answer says how often.
 pub const MOST_OUTSIDE: f64 = 0.01;
 
+impl Varying {
+    /// The fault of the spread against the range of its field; `place` among what varies.
+    #[must_use]
+    pub fn fault(&self, place: usize) -> Option<Fault> {
+        let quantity = self.field.quantity();
+        let share = self.spread.outside(&quantity);
+        let fits = share <= MOST_OUTSIDE;
+        (!fits).then(|| {
+            let detail = format!(
+                "{} of this spread lies outside what the {} may be ({} to {} {}); at most 1 % may",
+                percent(share),
+                quantity.name,
+                quantity.minimum,
+                quantity.maximum,
+                quantity.unit
+            );
+            let fault = Fault::new(format!("/varying/{place}/spread"), "outside_range", detail);
+            fault.within(quantity.minimum, quantity.maximum)
+        })
+    }
+}
+
 impl Study {
     /// The faults of the spreads against the ranges of their fields.
     #[must_use]
     pub fn faults(&self) -> Vec<Fault> {
-        let outside = |(i, varying): (usize, &Varying)| {
-            let quantity = varying.field.quantity();
-            let share = varying.spread.outside(&quantity);
-            (share > MOST_OUTSIDE).then(|| {
-                let detail = format!(
-                    "{} of this spread lies outside what {} may be ({} to {} {}); at most 1 % may",
-                    percent(share),
-                    quantity.name,
-                    quantity.minimum,
-                    quantity.maximum,
-                    quantity.unit
-                );
-                let fault = Fault::new(format!("/varying/{i}/spread"), "outside_range", detail);
-                fault.within(quantity.minimum, quantity.maximum)
-            })
-        };
-        self.varying.iter().enumerate().filter_map(outside).collect()
+        self.varying.iter().enumerate().filter_map(|(i, varying)| varying.fault(i)).collect()
     }
 
     /// How much work a study is, in trials: what progress is counted in.
@@ -146,7 +152,7 @@ impl Study {
         // More than 1 % within the range has been seen to by the faults above.
         let drawn: Vec<Drawn> =
             self.varying.iter().filter_map(|v| Drawn::new(&v.spread, &v.field.quantity())).collect();
-        let start = Trial::new(&self.base, &fields).map_err(Failure::Base)?;
+        let start = Trial::new(&self.means(&drawn), &fields).map_err(Failure::Base)?;
         let trials = Trials::run(&start, &drawn, self.trials, self.seed, watch)?;
         trials.refuse_when_too_few(&start)?;
         let (decided, model_doubt) = self.at_means(&drawn)?;
@@ -170,12 +176,18 @@ impl Study {
         Ok(outcome)
     }
 
-    /// The question at the means of what is drawn, decided; and the uncertainty of the margin from everything else.
-    fn at_means(&self, drawn: &[Drawn]) -> Result<(Decided, f64), Failure> {
+    /// The question at the means of what is drawn.
+    fn means(&self, drawn: &[Drawn]) -> Spec {
         let mut spec = self.base;
         for (varying, drawn) in self.varying.iter().zip(drawn) {
             varying.field.set(&mut spec, drawn.spread().mean());
         }
+        spec
+    }
+
+    /// The question at the means of what is drawn, decided; and the uncertainty of the margin from everything else.
+    fn at_means(&self, drawn: &[Drawn]) -> Result<(Decided, f64), Failure> {
+        let mut spec = self.means(drawn);
         let resolved = spec.resolve().map_err(Failure::Base)?;
         let decision = decide(&resolved.case).map_err(|fault| Failure::Base(stream_fault(fault)))?;
         let warnings = warnings(&spec, &resolved, &decision);

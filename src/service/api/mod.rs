@@ -18,6 +18,7 @@ pub mod quantity;
 pub mod surface;
 pub mod surfaces;
 pub mod sweeps;
+pub mod tolerances;
 pub mod version;
 
 use http::HeaderValue;
