@@ -14,6 +14,7 @@ pub mod evaluation;
 pub mod fault;
 pub mod field;
 pub mod flow_limit;
+pub mod lot;
 pub mod notice;
 pub mod remedy;
 pub mod resolve;

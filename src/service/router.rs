@@ -10,7 +10,7 @@ use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
 use super::api::{
-    batch, contact_angles, designs, docs, evaluations, health, liquids, metrics, problems, surfaces, tolerances, sweeps,
+    batch, contact_angles, designs, docs, evaluations, health, liquids, lots, metrics, problems, surfaces, tolerances, sweeps,
     version,
 };
 use super::contract;
@@ -26,6 +26,7 @@ fn resources() -> OpenApiRouter<Shared> {
         .routes(routes!(sweeps::sweep))
         .routes(routes!(designs::design))
         .routes(routes!(tolerances::tolerances))
+        .routes(routes!(lots::lots))
         .routes(routes!(contact_angles::contact_angles))
         .routes(routes!(liquids::list_liquids))
         .routes(routes!(liquids::liquid))

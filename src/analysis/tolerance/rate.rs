@@ -73,7 +73,7 @@ impl<'a> Rates<'a> {
         if counted.value >= RARE {
             return Ok(rates);
         }
-        let Some(weighted) = Weighted::run(start, drawn, seed, watch)? else { return Ok(rates) };
+        let Some(weighted) = Weighted::run(start, drawn, (seed, WEIGHTED_DRAWS), watch)? else { return Ok(rates) };
         let z = normal_quantile(0.5 * (1.0 + confidence));
         let count = weighted.below(0.0);
         let Some((low, high)) = count.interval(z) else { return Ok(rates) };
@@ -129,7 +129,7 @@ impl Weighted {
     fn run(
         start: &Trial<'_>,
         drawn: &[Drawn],
-        seed: u64,
+        (seed, draws): (u64, u64),
         watch: Watch<'_>,
     ) -> Result<Option<Self>, Cancelled> {
         let inputs = drawn.len();
@@ -147,12 +147,12 @@ impl Weighted {
         }
         let mixture = Mixture::around(&points, inputs);
         let sequence = Sequence::new(seed, RARE_STREAM);
-        let parts: Vec<Vec<(f64, f64)>> = (0..WEIGHTED_DRAWS.div_ceil(AT_A_TIME))
+        let parts: Vec<Vec<(f64, f64)>> = (0..draws.div_ceil(AT_A_TIME))
             .into_par_iter()
             .map(|piece| {
                 watch.look()?;
                 let from = piece * AT_A_TIME;
-                let to = (from + AT_A_TIME).min(WEIGHTED_DRAWS);
+                let to = (from + AT_A_TIME).min(draws);
                 let mut numbers = sequence.from(from * (inputs as u64 + 1));
                 let mut trial = start.clone();
                 let (mut z, mut values) = (vec![0.0; inputs], vec![0.0; inputs]);
@@ -179,5 +179,85 @@ impl Weighted {
             count.add(*weight, *m < margin);
         }
         count
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use std::sync::atomic::{AtomicBool, AtomicUsize};
+
+    use super::*;
+    use crate::{
+        analysis::{
+            field::Field,
+            spec::Spec,
+            statistics::normal::normal_cdf,
+            tolerance::{Spread, trial::tests::measured},
+        },
+        physics::numerics::{Bracket, find_root},
+    };
+
+    /// A lip whose margin falls with the radius through zero somewhere above 0.5 mm, and the radius where it does.
+    fn lip() -> (Spec, f64) {
+        let base = Spec { radius_mm: 0.5, turn_deg: 125.0, slope_deg: 15.0, flow_ml_s: 60.0, ..measured() };
+        let mut trial = Trial::new(&base, &[Field::EdgeRadius]).unwrap();
+        let mut margin = |radius: f64| trial.margin(&[radius]).unwrap();
+        let bracket = Bracket { low: (0.05, margin(0.05)), high: (20.0, margin(20.0)) };
+        let critical = find_root(margin, bracket, 1e-13).unwrap();
+        (base, critical)
+    }
+
+    fn watched<T>(run: impl FnOnce(Watch<'_>) -> T) -> T {
+        run(Watch { done: &AtomicUsize::new(0), cancelled: &AtomicBool::new(false) })
+    }
+
+    /// Counts how often an interval holds the exact rate of a normal spread whose rate is known: the lip dribbles beyond
+    /// the critical radius.
+    fn coverage(rate: f64, mut interval: impl FnMut(&Trial<'_>, &[Drawn], u64) -> (f64, f64)) -> u64 {
+        let (base, critical) = lip();
+        let sd = 0.02 * critical;
+        let spread = Spread::Normal { mean: critical + sd * normal_quantile(rate), sd };
+        let drawn = [Drawn::new(&spread, &Field::EdgeRadius.quantity()).unwrap()];
+        let exact = normal_cdf(-(critical - spread.mean()) / sd);
+        assert!((exact / rate - 1.0).abs() < 1e-9);
+        let start = Trial::new(&base, &[Field::EdgeRadius]).unwrap();
+        (1..=SEEDS)
+            .filter(|seed| {
+                let (low, high) = interval(&start, &drawn, *seed);
+                low <= rate && rate <= high
+            })
+            .count() as u64
+    }
+
+    const SEEDS: u64 = 300;
+
+    /// 95 % intervals hold the truth as often as they say, within three and a half binomial standard deviations; exact ones may
+    /// hold it more often.
+    #[test]
+    fn counted_intervals_cover() {
+        let spread = (0.95 * 0.05 * SEEDS as f64).sqrt();
+        for (rate, trials, exact) in [(0.03, 2000, false), (0.004, 2000, true), (0.0005, 2000, true)] {
+            let hits = coverage(rate, |start, drawn, seed| {
+                let trials = watched(|watch| Trials::run(start, drawn, trials, seed, watch)).unwrap();
+                let margins = &trials.margins;
+                let rate = counted(count_below(margins, 0.0), margins.len() as u64, 0.95).unwrap();
+                (rate.low, rate.high)
+            }) as f64;
+            let expected = 0.95 * SEEDS as f64;
+            assert!(hits > expected - 3.5 * spread, "{rate} {hits}");
+            assert!(exact || hits < expected + 3.5 * spread, "{rate} {hits}");
+        }
+    }
+
+    #[test]
+    fn intervals_of_rare_rates_cover() {
+        let spread = (0.95 * 0.05 * SEEDS as f64).sqrt();
+        for rate in [3e-5, 1e-7] {
+            let hits = coverage(rate, |start, drawn, seed| {
+                let found = watched(|watch| Weighted::run(start, drawn, (seed, 2000), watch)).unwrap().unwrap();
+                found.below(0.0).interval(1.96).unwrap()
+            }) as f64;
+            assert!((hits - 0.95 * SEEDS as f64).abs() < 3.5 * spread, "{rate} {hits}");
+        }
     }
 }

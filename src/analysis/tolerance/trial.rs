@@ -118,7 +118,7 @@ impl<'a> Trial<'a> {
 }
 
 #[cfg(test)]
-mod tests {
+pub(super) mod tests {
     use super::*;
     use crate::analysis::{decision::decide, spec::{LiquidSpec, OuterFace, SectionSpec, Uncertainties}};
     use crate::physics::{liquid, separation::closed_form::DEFAULT_SET, surface::{self, State}};
@@ -151,7 +151,7 @@ mod tests {
         }
     }
 
-    fn measured() -> Spec {
+    pub(in crate::analysis::tolerance) fn measured() -> Spec {
         Spec {
             surface: SurfaceSpec::Measured {
                 contact_angle_deg: Some(60.0),

@@ -10,6 +10,7 @@ mod inside;
 pub mod lip;
 pub mod liquid;
 pub mod liquids;
+pub mod lots;
 pub mod metrics;
 pub mod notice;
 pub mod problems;
