@@ -222,7 +222,7 @@ async fn pointers_and_counts_are_checked() {
     }
     // The operator's own limit.
     let small = service(&state(|s| s.max_points = 1000.try_into().unwrap()));
-    let problem = post_json(&small, PATH, request.to_string()).await.problem();
+    let problem = post_json(&small, PATH, request().to_string()).await.problem();
     assert_eq!(problem["errors"][0]["maximum"], 1000.0);
 }
 
