@@ -1,7 +1,7 @@
 //! Sweeps: the core on one thread, the service end to end, its memory, what a hung-up caller leaves behind, and single evaluations beside a sweep.
 //!
-//! `cargo bench --bench sweeps`. With the address of a running service in `DRIBBLE_RISK_PEER` set to `1` the NumPy version of the same formulas is run
-//! on the same machine (`benches/peer/run`), checked against the service and timed.
+//! `cargo bench --bench sweeps`. With `DRIBBLE_RISK_PEER=1` the NumPy version of the same formulas (`benches/peer/run`) is checked against the same
+//! service and timed in the same run.
 #![allow(missing_docs, clippy::unwrap_used, clippy::expect_used, clippy::panic)]
 
 use std::{
@@ -37,9 +37,9 @@ fn main() {
         return;
     }
     core();
+    memory();
     let server = Server::start();
     end_to_end(&server);
-    memory(&server);
     hang_up(&server);
     beside_a_sweep(&server);
     if std::env::var_os("DRIBBLE_RISK_PEER").is_some() {
@@ -128,10 +128,13 @@ fn rate(spec: Spec, axes: &[Axis]) -> f64 {
 }
 
 fn request(side_1: usize, side_2: usize, slope: f64, path: &str, accept: &str) -> Vec<u8> {
-    let body = format!(
+    post(path, accept, &body(side_1, side_2, slope))
+}
+
+fn body(side_1: usize, side_2: usize, slope: f64) -> String {
+    format!(
         r#"{{"base":{{"lip":{{"section":{{"sheet":{{"width_mm":24}}}},"edge":{{"rounded":{{"radius_mm":0.8,"turn_deg":110}}}},"run":{{"slope_deg":{slope},"length_mm":20}}}},"surface":{{"measured":{{"contact_angle_deg":72,"advancing_deg":84,"receding_deg":41}}}},"liquid":{{"measured":{{"density_kg_m3":1030,"viscosity_mpa_s":2.1,"surface_tension_mn_m":46}}}},"pour":{{"flow_ml_s":25}}}},"axes":[{{"pointer":"/lip/edge/rounded/radius_mm","from":0.1,"to":3,"count":{side_1}}},{{"pointer":"/pour/flow_ml_s","from":5,"to":100,"count":{side_2}}}],"outputs":["safety_factor","dribble_probability"]}}"#
-    );
-    post(path, accept, &body)
+    )
 }
 
 fn post(path: &str, accept: &str, body: &str) -> Vec<u8> {
@@ -188,9 +191,10 @@ fn fetch(address: SocketAddr, request: &[u8]) -> usize {
     total
 }
 
-/// Ten million points: memory above idle while they are streamed.
-fn memory(server: &Server) {
+/// Ten million points: memory above idle while they are streamed, by a server that has done nothing large before.
+fn memory() {
     for (name, accept) in FORMS {
+        let server = Server::start();
         let idle = server.memory("VmRSS");
         server.reset_peak();
         let begun = Instant::now();
@@ -210,12 +214,11 @@ fn memory(server: &Server) {
 fn hang_up(server: &Server) {
     let mut stream = TcpStream::connect(server.address).unwrap();
     // No table helps here: each point has a stream of its own.
-    let body = String::from_utf8(request(10_000, 1000, 15.0, "/v1/sweeps", "text/csv")).unwrap();
-    let body = body.replace(
-        "/lip/edge/rounded/radius_mm\",\"from\":0.1,\"to\":3",
-        "/lip/run/slope_deg\",\"from\":1,\"to\":9",
+    let body = body(10_000, 1000, 15.0).replace(
+        r#""/lip/edge/rounded/radius_mm","from":0.1,"to":3"#,
+        r#""/lip/run/slope_deg","from":1,"to":9"#,
     );
-    stream.write_all(body.as_bytes()).unwrap();
+    stream.write_all(&post("/v1/sweeps", "text/csv", &body)).unwrap();
     let mut buffer = [0; 4096];
     let _ = stream.read(&mut buffer).unwrap();
     assert!(buffer.starts_with(b"HTTP/1.1 200"), "{}", String::from_utf8_lossy(&buffer));

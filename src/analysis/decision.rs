@@ -26,6 +26,12 @@ pub enum Verdict {
 }
 
 impl Verdict {
+    /// The verdict of this word.
+    #[must_use]
+    pub fn named(word: &str) -> Option<Self> {
+        [Self::Clean, Self::Marginal, Self::Dribbles].into_iter().find(|verdict| verdict.as_str() == word)
+    }
+
     /// The word used in answers.
     #[must_use]
     pub const fn as_str(self) -> &'static str {

@@ -16,6 +16,7 @@ pub mod field;
 pub mod flow_limit;
 pub mod lot;
 pub mod notice;
+pub mod pour;
 pub mod remedy;
 pub mod resolve;
 pub mod spec;

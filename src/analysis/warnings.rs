@@ -10,6 +10,7 @@ use super::{
 };
 use crate::physics::{
     liquid::Property,
+    separation::closed_form::SET_1,
     stream::{Control, Flags},
 };
 
@@ -21,6 +22,13 @@ pub fn warnings(spec: &Spec, resolved: &Resolved, decision: &Decision) -> Vec<No
     stream_warnings(spec, resolved, decision, &mut found);
     liquid_warnings(spec, resolved, &mut found);
     surface_warnings(spec, resolved, &mut found);
+    if resolved.case.coefficients.id == SET_1.id {
+        found.push(Notice::at(
+            "coefficients_under_review",
+            "/coefficients",
+            "Flow computations under way, with streams held at rest near the threshold, put the critical Weber number above set-1 by something like 0.2 to 0.4 in ln: count a safety factor below about 1.5 as no margin.",
+        ));
+    }
     found.push(Notice::new(
         "not_compared_with_experiment",
         "Neither the stream at millimetre depth nor the critical Weber number has been compared with a measured lip; the doubt stated includes that by judgement.",

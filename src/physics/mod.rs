@@ -12,6 +12,7 @@ pub mod quantity;
 pub mod separation;
 pub mod stream;
 pub mod surface;
+pub mod vessel;
 
 /// Standard acceleration of gravity, m/s² (exact by convention: 3rd CGPM, 1901).
 pub const GRAVITY: f64 = 9.80665;

@@ -91,3 +91,17 @@ pub const ROUGHNESS_RATIO: Quantity = quantity("roughness ratio", "", 1.0, 20.0,
 pub const SOLID_FRACTION: Quantity = quantity("solid fraction", "", 0.001, 1.0, 1.0);
 /// Confidence of a verdict.
 pub const CONFIDENCE: Quantity = quantity("confidence", "", 0.5, 0.9999, 1.0);
+/// A length of a vessel: diameter, height, length, width.
+pub const VESSEL_LENGTH: Quantity = quantity("length of the vessel", "mm", 5.0, 5000.0, 1e-3);
+/// A length of a vessel that may be 0: a cone's tip, a point of a profile.
+pub const VESSEL_OFFSET: Quantity = quantity("length in the vessel", "mm", 0.0, 5000.0, 1e-3);
+/// Volume of liquid in a vessel.
+pub const FILL: Quantity = quantity("volume in the vessel", "mL", 0.1, 1e6, 1e-6);
+/// Tilt of a vessel, from upright to upside down.
+pub const TILT: Quantity = quantity("tilt", "deg", 0.0, 180.0, DEGREE);
+/// Rate of tilting.
+pub const TILT_RATE: Quantity = quantity("rate of tilting", "deg/s", 0.1, 1000.0, DEGREE);
+/// Time in a tilt programme.
+pub const TIME: Quantity = quantity("time", "s", 0.0, 3600.0, 1.0);
+/// Height of the lip above where the stream lands.
+pub const DROP: Quantity = quantity("height of fall", "mm", 1.0, 5000.0, 1e-3);

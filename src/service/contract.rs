@@ -17,6 +17,7 @@ use super::problem::{PROBLEM_JSON, ProblemDocument, ProblemKind};
     tags(
         (name = "lip", description = "Does a lip dribble?"),
         (name = "production", description = "Spread, bench and lot: what production makes of a lip"),
+        (name = "maps", description = "Where does clean end?"),
         (name = "catalogue", description = "Liquids, materials, and how they wet each other"),
         (name = "operation", description = "For those who run the service")
     ),

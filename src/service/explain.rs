@@ -25,6 +25,11 @@ pub trait Request: DeserializeOwned + ToSchema {
     /// What is wrong with a request that has the right form.
     fn faults(&self) -> Vec<Fault>;
 
+    /// Members that a fault of this code rests on besides its own: it is not told while one of them is a stand-in.
+    fn rests_on(_code: &str) -> &'static [&'static str] {
+        &[]
+    }
+
     /// Where the schema of this request is kept once it has been written.
     fn contract() -> &'static OnceLock<Contract>;
 }
@@ -139,7 +144,8 @@ fn faults_elsewhere<T: Request>(document: &Value, known: &[Fault]) -> Vec<Fault>
         let part = parts.next().unwrap_or_default();
         // A member that is itself a pointer speaks of the part that it points into.
         let of = parts.next().and_then(|name| name.strip_prefix("~1")?.split("~1").next());
-        !broken(part) && !of.is_some_and(&broken) && fault.code != "not_applicable"
+        let stands = !T::rests_on(fault.code).iter().any(|part| broken(part));
+        stands && !broken(part) && !of.is_some_and(&broken) && fault.code != "not_applicable"
     });
     found
 }

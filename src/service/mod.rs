@@ -15,6 +15,7 @@ pub mod layers;
 pub mod nearest;
 pub mod negotiation;
 pub mod problem;
+pub mod render;
 pub mod router;
 pub mod run;
 pub mod settings;

@@ -10,8 +10,8 @@ use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
 use super::api::{
-    batch, contact_angles, designs, docs, evaluations, health, liquids, lots, metrics, problems, surfaces, tolerances, sweeps,
-    version,
+    batch, contact_angles, designs, docs, evaluations, health, liquids, lots, metrics, pours, problems,
+    surfaces, sweeps, tolerances, version,
 };
 use super::contract;
 use super::layers::House;
@@ -28,6 +28,7 @@ fn resources() -> OpenApiRouter<Shared> {
         .routes(routes!(tolerances::tolerances))
         .routes(routes!(lots::lots))
         .routes(routes!(contact_angles::contact_angles))
+        .routes(routes!(pours::pour))
         .routes(routes!(liquids::list_liquids))
         .routes(routes!(liquids::liquid))
         .routes(routes!(surfaces::list_surfaces))

@@ -172,3 +172,27 @@ async fn a_lot_of_a_thousand_parts_is_quick_and_finite() {
     let found = answer(&large).await;
     assert!(found["decision"].is_string() && found["performance"]["ppk_low"].is_number());
 }
+
+#[tokio::test]
+async fn lots_and_tolerances_come_as_pictures() {
+    let service = service(&state(|_| {}));
+    let tolerances = include_str!("../../src/service/api/tolerances/example.json");
+    let pour_test = r#"{"evidence": {"pour_test": {"pieces": 45, "dribbled": 0}}}"#;
+    let mut single = request();
+    single["evidence"]["measured"]["values"] = json!([0.43]);
+    for (path, body, shows) in [
+        ("/v1/tolerances", tolerances.to_owned(), &["of a million pours dribble", "What drives the margin"][..]),
+        (PATH, request().to_string(), &["Accept: ", "limit", "Operating characteristic"]),
+        (PATH, single.to_string(), &["More pieces needed"]),
+        (PATH, pour_test.to_owned(), &["Operating characteristic with 45 pieces"]),
+    ] {
+        let headers = [("content-type", "application/json"), ("accept", "image/svg+xml")];
+        let picture = crate::ask::call(&service, "POST", path, &headers, body.into()).await;
+        assert_eq!((picture.status, picture.header("content-type")), (StatusCode::OK, "image/svg+xml"));
+        let text = std::str::from_utf8(&picture.body).unwrap();
+        assert!(text.starts_with("<svg ") && text.trim_end().ends_with("</svg>") && !text.contains("NaN"), "{path}");
+        for words in shows {
+            assert!(text.contains(words), "{path}: {words}");
+        }
+    }
+}

@@ -12,6 +12,8 @@ mod designs;
 mod evaluations;
 mod lookups;
 mod lots;
+mod pictures;
+mod pours;
 mod problems;
 mod properties;
 mod readme;

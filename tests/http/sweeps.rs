@@ -138,7 +138,7 @@ async fn csv_and_arrow_hold_the_same_table() {
         assert_eq!(schema.metadata()["fingerprint"], table["model"]["fingerprint"].as_str().unwrap());
         let found: Vec<&str> = schema.fields().iter().map(|field| field.name().as_str()).collect();
         assert_eq!(found, names);
-        assert_eq!(schema.field(0).is_nullable(), false);
+        assert!(!schema.field(0).is_nullable());
         assert!(schema.field(0).metadata().contains_key("unit"));
         let mut rows = 0;
         for batch in reader {

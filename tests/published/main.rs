@@ -5,5 +5,7 @@
 mod facts;
 mod hydraulics;
 mod liquids;
+mod pour;
 mod statistics;
+mod vessel;
 mod wetting;

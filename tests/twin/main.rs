@@ -287,9 +287,45 @@ fn outputs_are_those_of_an_evaluation() {
 }
 
 #[test]
+fn a_picture_is_drawn_from_the_same_table() {
+    let mut base = plain();
+    base.flow_ml_s = 15.0;
+    let never = AtomicBool::new(false);
+    let axes = vec![
+        Axis::new(Field::Flow, Values::Logarithmic { from: 1.0, to: 100.0, count: 5 }),
+        Axis::new(Field::EdgeRadius, Values::Listed(vec![0.1, 0.5])),
+    ];
+    let sweep = Sweep::new(base, axes, &never).unwrap();
+    let table = sweep.picture_table(&never).unwrap();
+    assert_eq!((table.axes[0].values.len(), table.axes[0].is_logarithmic), (5, true));
+    assert_eq!(table.axes[1].values, [0.1, 0.5]);
+    assert_eq!((table.safety_factor.len(), table.verdicts.len()), (10, 10));
+    for row in 0..10 {
+        let mut at = base;
+        Field::Flow.set(&mut at, table.axes[0].values[row / 2]);
+        Field::EdgeRadius.set(&mut at, table.axes[1].values[row % 2]);
+        let (expected, verdict) = single(&at).unwrap();
+        assert!(close(table.safety_factor[row], expected[0]) && close(table.low[row], expected[1]));
+        assert!(close(table.high[row], expected[2]) && close(table.dribble_probability[row], expected[3]));
+        assert_eq!(table.verdicts[row].map(|v| v.as_str()), Some(verdict));
+    }
+    let asked = table.asked.unwrap();
+    assert_eq!(asked.at, [15.0, 0.8]);
+    assert!(close(asked.decision.margin, single(&base).unwrap().0[4]));
+}
+
+#[test]
 fn a_cancelled_sweep_stops() {
     let stop = AtomicBool::new(true);
-    let spec = Spec {
+    let spec = plain();
+    let axis = || vec![Axis::new(Field::Flow, Values::Linear { from: 1.0, to: 2.0, count: 10 })];
+    assert!(Sweep::new(spec, axis(), &stop).is_err());
+    let sweep = Sweep::new(spec, axis(), &AtomicBool::new(false)).unwrap();
+    assert!(sweep.block(0..10, &[Output::Margin], &stop).is_err());
+}
+
+fn plain() -> Spec {
+    Spec {
         section: SectionSpec::Sheet { width_mm: 24.0 },
         radius_mm: 0.8,
         turn_deg: 110.0,
@@ -310,9 +346,5 @@ fn a_cancelled_sweep_stops() {
         confidence: 0.95,
         uncertainty: Uncertainties::default(),
         coefficients: DEFAULT_SET,
-    };
-    let axis = || vec![Axis::new(Field::Flow, Values::Linear { from: 1.0, to: 2.0, count: 10 })];
-    assert!(Sweep::new(spec, axis(), &stop).is_err());
-    let sweep = Sweep::new(spec, axis(), &AtomicBool::new(false)).unwrap();
-    assert!(sweep.block(0..10, &[Output::Margin], &stop).is_err());
+    }
 }

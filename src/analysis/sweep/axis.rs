@@ -95,6 +95,12 @@ impl Axis {
         self.values.len()
     }
 
+    /// Whether the values lie evenly in their logarithm.
+    #[must_use]
+    pub const fn is_logarithmic(&self) -> bool {
+        matches!(self.values, Values::Logarithmic { .. })
+    }
+
     /// The value at this place.
     #[must_use]
     pub fn at(&self, index: usize) -> f64 {

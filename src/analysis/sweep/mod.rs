@@ -9,6 +9,7 @@ mod axis;
 mod block;
 mod layers;
 mod output;
+mod picture;
 mod point;
 
 use std::{
@@ -22,6 +23,7 @@ use rayon::prelude::*;
 pub use axis::{Axis, MOST_AXES, Values};
 pub use block::{Block, Column};
 pub use output::Output;
+pub use picture::{PictureAxis, PicturePoint, PictureTable};
 
 use self::{
     layers::{Desk, Ground, Layers, Places},

@@ -23,5 +23,6 @@
 pub mod adhesion;
 pub mod closed_form;
 pub mod deflection;
+pub mod free_surface;
 pub mod numbers;
 pub mod pinning;

@@ -43,17 +43,21 @@ mod brink;
 mod crest;
 mod critical;
 mod flags;
+mod free_stream;
 mod friction;
 mod join;
 mod march;
 mod newton;
+mod rating;
 mod sheet;
 mod tube;
 
 pub use brink::{brink_ratio, end_depth_ratio};
 pub use critical::{critical_depth, critical_flow, critical_head, start_head};
 pub use flags::Flags;
+pub use free_stream::{Launch, ballistic_distance, jet_distance, sheet_distance};
 pub use friction::{friction_slope, normal_depth};
+pub use rating::{rated_flow, sill_height};
 pub use sheet::depth_after as sheet_depth_after;
 pub use tube::{CAVITY_SPEED, FULL_BOND};
 

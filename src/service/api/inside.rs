@@ -16,14 +16,16 @@ use crate::{
     },
 };
 
-/// The field that `pointer` names in the base, to be given values. `at`: where the pointer stands in the request.
+/// The field that `pointer` names in the base, to be given values. `at`: where the pointer stands in the request. Without `spec`, where the base has faults
+/// of its own, it is any field of an evaluation request.
 pub(super) fn field_at(
     base: &EvaluationRequest,
-    spec: &Spec,
+    spec: Option<&Spec>,
     pointer: &str,
     at: String,
 ) -> Result<Field, Fault> {
-    let own = || Field::all().filter(|field| has(spec, *field)).map(Field::pointer);
+    let is_there = |field: Field| spec.is_none_or(|spec| has(spec, field));
+    let own = || Field::all().filter(|field| is_there(*field)).map(Field::pointer);
     let Some(field) = Field::at(pointer) else {
         let there = serde_json::to_value(base).ok().and_then(|value| value.pointer(pointer).cloned());
         let fault = match there {
@@ -43,7 +45,7 @@ pub(super) fn field_at(
         };
         return Err(fault.choices(nearest(pointer, own())));
     };
-    if has(spec, field) {
+    if is_there(field) {
         return Ok(field);
     }
     let detail = format!("this base has no {pointer}: its lip, surface or liquid is of another kind");

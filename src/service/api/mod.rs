@@ -13,6 +13,7 @@ pub mod liquids;
 pub mod lots;
 pub mod metrics;
 pub mod notice;
+pub mod pours;
 pub mod problems;
 pub mod property;
 pub mod quantity;

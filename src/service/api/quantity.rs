@@ -148,6 +148,20 @@ quantities! {
     RoughnessRatio = range::ROUGHNESS_RATIO, 1.3;
     /// Solid fraction.
     SolidFraction = range::SOLID_FRACTION, 0.2;
+    /// Length of a vessel, mm.
+    VesselLength = range::VESSEL_LENGTH, 100.0;
+    /// Length in a vessel that may be 0, mm.
+    VesselOffset = range::VESSEL_OFFSET, 72.0;
+    /// Volume in a vessel, mL.
+    Fill = range::FILL, 1000.0;
+    /// Tilt, degrees.
+    Tilt = range::TILT, 55.0;
+    /// Rate of tilting, °/s.
+    TiltRate = range::TILT_RATE, 15.0;
+    /// Time, s.
+    Time = range::TIME, 2.0;
+    /// Height of fall, mm.
+    Drop = range::DROP, 100.0;
     /// Confidence.
     Confidence = range::CONFIDENCE, 0.95;
 }

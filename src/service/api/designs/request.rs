@@ -134,10 +134,9 @@ impl DesignRequest {
                 None
             }
         };
-        let field = base.as_ref().and_then(|base| {
-            let at = "/vary/pointer".to_owned();
-            field_at(&self.base, base, &self.vary.pointer, at).map_err(|fault| faults.push(fault)).ok()
-        });
+        let at = "/vary/pointer".to_owned();
+        let field = field_at(&self.base, base.as_ref(), &self.vary.pointer, at);
+        let field = field.map_err(|fault| faults.push(fault)).ok();
         let between = self.between(field, &mut faults);
         let count = self.cases.len();
         if count == 0 || count > MOST_CASES {
@@ -201,7 +200,7 @@ impl DesignRequest {
                 spec.uncertainty.set(field, u);
             }
         }
-        if field_at(&self.base, &spec, field.pointer(), String::new()).is_err() {
+        if field_at(&self.base, Some(&spec), field.pointer(), String::new()).is_err() {
             let detail = format!("this case has no {}, which is to be varied", field.pointer());
             faults.push(Fault::new("", "not_applicable", detail));
         }

@@ -1,22 +1,30 @@
 //! `POST /v1/evaluations`: does this lip dribble, by what margin, how surely, and what would mend it?
 
 mod answer;
+mod parts;
+mod picture;
 mod request;
 
 use axum::response::Response;
 use http::{HeaderMap, HeaderValue, header};
 
 pub use answer::EvaluationAnswer;
-pub use request::{EXAMPLE, EvaluationRequest, PourRequest};
+pub use parts::{IntervalAnswer, VerdictAnswer};
+pub use request::{EXAMPLE, EvaluationRequest, MethodRequest, OuterFaceRequest, PourRequest};
 
 use crate::{
-    analysis::{evaluation, fault::Fault},
+    analysis::{
+        evaluation::{self, Evaluation},
+        fault::Fault,
+        spec::Spec,
+    },
     service::{
         body::JsonBytes,
         explain::{invalid, read},
         fingerprint::ModelAnswer,
         negotiation::{JSON, choose},
         problem::Problem,
+        render::SVG,
     },
 };
 
@@ -26,12 +34,15 @@ use crate::{
 /// the lip changes sides, and looks for the smallest single changes that would mend it.
 #[utoipa::path(post, path = "/v1/evaluations", tag = "lip",
     request_body(content = EvaluationRequest, description = "Lip, surface, liquid and pour rate"),
-    responses((status = 200, description = "What is said of this lip", body = EvaluationAnswer<'static>)))]
+    responses((status = 200, description = "What is said of this lip; as `image/svg+xml` a drawing of it, to scale, with its stream and the key numbers in words", content(
+        (EvaluationAnswer<'static> = "application/json"),
+        (String = "image/svg+xml")
+    ))))]
 pub async fn evaluate(headers: HeaderMap, JsonBytes(bytes): JsonBytes) -> Result<Response, Problem> {
-    choose(&headers, &[JSON])?;
-    let answer = evaluate_json(&bytes)?;
+    let form = choose(&headers, &[JSON, SVG])?;
+    let answer = if form == SVG { evaluate_svg(&bytes)?.into_bytes() } else { evaluate_json(&bytes)? };
     let mut response = Response::new(answer.into());
-    response.headers_mut().insert(header::CONTENT_TYPE, HeaderValue::from_static(JSON));
+    response.headers_mut().insert(header::CONTENT_TYPE, HeaderValue::from_static(form));
     Ok(response)
 }
 
@@ -44,6 +55,20 @@ pub fn evaluate_json(bytes: &[u8]) -> Result<Vec<u8>, Problem> {
     let mut answer = Vec::with_capacity(4096);
     evaluate_into(&request, &mut answer)?;
     Ok(answer)
+}
+
+/// Decides one evaluation request given as JSON text and draws the lip.
+///
+/// # Errors
+/// The problem that the HTTP resource would answer with.
+pub fn evaluate_svg(bytes: &[u8]) -> Result<String, Problem> {
+    let request: EvaluationRequest = read(bytes)?;
+    let (spec, evaluation) = evaluated(&request)?;
+    let model = ModelAnswer::of(&request, spec.coefficients.id);
+    let answer = EvaluationAnswer::new(&spec, &evaluation, model);
+    // What cannot be said in JSON is not drawn either.
+    serde_json::to_writer(std::io::sink(), &answer).map_err(|_| Failure::NotFinite)?;
+    Ok(picture::picture(&spec, &evaluation, &answer))
 }
 
 /// Why there is no answer to a request of the right form.
@@ -69,9 +94,14 @@ impl From<Failure> for Problem {
 /// # Errors
 /// Every fault of the request; a number that is not finite.
 pub fn evaluate_into(request: &EvaluationRequest, answer: &mut Vec<u8>) -> Result<(), Failure> {
-    let (spec, limits) = request.question().map_err(Failure::Faults)?;
-    let evaluation = evaluation::evaluate(&spec, request.include(), &limits).map_err(Failure::Faults)?;
+    let (spec, evaluation) = evaluated(request)?;
     let model = ModelAnswer::of(request, spec.coefficients.id);
     let written = EvaluationAnswer::new(&spec, &evaluation, model);
     serde_json::to_writer(answer, &written).map_err(|_| Failure::NotFinite)
+}
+
+fn evaluated(request: &EvaluationRequest) -> Result<(Spec, Evaluation), Failure> {
+    let (spec, limits) = request.question().map_err(Failure::Faults)?;
+    let evaluation = evaluation::evaluate(&spec, request.include(), &limits).map_err(Failure::Faults)?;
+    Ok((spec, evaluation))
 }

@@ -151,7 +151,7 @@ fn default_outputs() -> Vec<OutputRequest> {
 fn needed<'de, D: Deserializer<'de>>(deserializer: D) -> Result<u64, D::Error> {
     let number = f64::deserialize(deserializer)?;
     // Up to here doubles hold every whole number.
-    if number >= 0.0 && number <= 9_007_199_254_740_992.0 && number == libm::trunc(number) {
+    if (0.0..=9_007_199_254_740_992.0).contains(&number) && number == libm::trunc(number) {
         Ok(number as u64)
     } else {
         Err(de::Error::custom("a whole number is needed"))
@@ -244,9 +244,8 @@ impl SweepRequest {
             let detail = format!("{} is varied by an earlier axis already", quoted(&axis.pointer));
             faults.push(Fault::new(at("pointer"), "repeated", detail));
         }
-        let field = spec.and_then(|spec| {
-            field_at(&self.base, spec, &axis.pointer, at("pointer")).map_err(|fault| faults.push(fault)).ok()
-        });
+        let field =
+            field_at(&self.base, spec, &axis.pointer, at("pointer")).map_err(|fault| faults.push(fault)).ok();
         let values = axis.values(&at, faults);
         let field = field?;
         let quantity = field.quantity();
