@@ -113,7 +113,8 @@ impl Spec {
     /// contradict each other.
     #[must_use]
     pub fn contact_angle(&self, liquid: &Properties) -> Option<f64> {
-        let (angles, _) = self.resolve_surface(Some(&wetting_liquid(&self.liquid, liquid)), &mut Vec::new())?;
+        let (angles, _) =
+            self.resolve_surface(Some(&wetting_liquid(&self.liquid, liquid)), &mut Vec::new())?;
         Some(match self.outer_face {
             OuterFace::Dry => angles.advancing.angle,
             OuterFace::Wet => angles.receding.angle,

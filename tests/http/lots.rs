@@ -27,7 +27,8 @@ async fn faults(request: &Value) -> Vec<(String, String)> {
 }
 
 fn near(found: &Value, pointer: &str, expected: f64, tolerance: f64) {
-    let number = found.pointer(pointer).and_then(Value::as_f64).unwrap_or_else(|| panic!("{pointer}: {found}"));
+    let number =
+        found.pointer(pointer).and_then(Value::as_f64).unwrap_or_else(|| panic!("{pointer}: {found}"));
     assert!((number - expected).abs() <= tolerance, "{pointer}: {number}, should be {expected}");
 }
 
@@ -49,7 +50,9 @@ async fn a_lot_of_measured_radii_is_accepted_with_its_risks() {
     near(&found, "/normality/p_value", 0.866_214, 1e-5);
     assert_eq!(found["limit"], json!({"sense": "at_most", "unit": "mm", "value": 0.52}));
     let oc = found["operating_characteristic"].as_array().unwrap();
-    let falls = |pair: &[Value]| pair[0]["acceptance_probability"].as_f64() >= pair[1]["acceptance_probability"].as_f64();
+    let falls = |pair: &[Value]| {
+        pair[0]["acceptance_probability"].as_f64() >= pair[1]["acceptance_probability"].as_f64()
+    };
     assert!(oc.len() > 30 && oc.windows(2).all(falls));
     // Uncertainty of the gauge moves the limit that decides.
     let found = answer(&request()).await;
@@ -74,7 +77,10 @@ async fn bad_lots_are_rejected_and_small_ones_left_open() {
     let mut constant = request();
     constant["evidence"]["measured"]["values"] = json!(vec![0.43; 30]);
     let found = answer(&constant).await;
-    assert_eq!((found["decision"].as_str(), found["method"].as_str()), (Some("more_pieces_needed"), Some("attributes")));
+    assert_eq!(
+        (found["decision"].as_str(), found["method"].as_str()),
+        (Some("more_pieces_needed"), Some("attributes"))
+    );
     assert!(found["warnings"].to_string().contains("no_spread"));
 }
 
@@ -90,7 +96,7 @@ async fn pour_tests_are_counted() {
     let found = answer(&test(38, 0, None)).await;
     assert_eq!(found["decision"], "accept");
     assert_eq!(found["plan"]["zero_acceptance_pieces"], 38);
-    near(&found, "/fraction_nonconforming/high", 1.0 - 0.05_f64.powf(1.0 / 38.0), 1e-12);
+    near(&found, "/fraction_nonconforming/high", 1.0 - libm::pow(0.05, 1.0 / 38.0), 1e-12);
     assert_eq!(answer(&test(37, 0, None)).await["decision"], "more_pieces_needed");
     assert_eq!(answer(&test(37, 9, None)).await["decision"], "reject");
     assert_eq!(answer(&test(37, 0, Some(200))).await["decision"], "accept");
@@ -118,7 +124,10 @@ async fn the_limit_may_come_from_a_design() {
     // Faults inside the design keep their place.
     lot["limit"]["from_design"]["vary"]["pointer"] = json!("/lip/edge/rounded/radius");
     let found = faults(&lot).await;
-    assert!(found.contains(&("/limit/from_design/vary/pointer".into(), "unknown_pointer".into())), "{found:?}");
+    assert!(
+        found.contains(&("/limit/from_design/vary/pointer".into(), "unknown_pointer".into())),
+        "{found:?}"
+    );
 }
 
 #[tokio::test]
@@ -152,7 +161,11 @@ async fn every_fault_of_a_request_is_listed() {
     for (request, pointer, code) in [
         (set(json!({"pieces": 0, "dribbled": 0})), "/evidence/pour_test/pieces", "out_of_range"),
         (set(json!({"pieces": 5, "dribbled": 6})), "/evidence/pour_test/dribbled", "contradiction"),
-        (set(json!({"pieces": 5, "dribbled": 0, "lot_size": 3})), "/evidence/pour_test/pieces", "contradiction"),
+        (
+            set(json!({"pieces": 5, "dribbled": 0, "lot_size": 3})),
+            "/evidence/pour_test/pieces",
+            "contradiction",
+        ),
         (set(json!({"pieces": 5})), "/evidence/pour_test/dribbled", "missing"),
         (json!({"evidence": {}}), "/evidence", "missing"),
     ] {
@@ -160,14 +173,16 @@ async fn every_fault_of_a_request_is_listed() {
         assert!(found.contains(&(pointer.into(), code.into())), "{pointer} {code} in {found:?}");
     }
     let mut close = request();
-    close["plan"] = json!({"producer": {"fraction": 0.01, "risk": 0.05}, "consumer": {"fraction": 0.01001, "risk": 0.1}});
+    close["plan"] =
+        json!({"producer": {"fraction": 0.01, "risk": 0.05}, "consumer": {"fraction": 0.01001, "risk": 0.1}});
     assert_eq!(faults(&close).await, [("/plan".into(), "not_applicable".into())]);
 }
 
 #[tokio::test]
 async fn a_lot_of_a_thousand_parts_is_quick_and_finite() {
     let mut large = request();
-    let value = |i: u32| 0.43 + 0.01 * (f64::from(i) * 0.37).sin() + 0.006 * (f64::from(i) * 1.91).cos();
+    let value =
+        |i: u32| 0.43 + 0.01 * libm::sin(f64::from(i) * 0.37) + 0.006 * libm::cos(f64::from(i) * 1.91);
     large["evidence"]["measured"]["values"] = json!((0..1000).map(value).collect::<Vec<_>>());
     let found = answer(&large).await;
     assert!(found["decision"].is_string() && found["performance"]["ppk_low"].is_number());
@@ -181,7 +196,11 @@ async fn lots_and_tolerances_come_as_pictures() {
     let mut single = request();
     single["evidence"]["measured"]["values"] = json!([0.43]);
     for (path, body, shows) in [
-        ("/v1/tolerances", tolerances.to_owned(), &["of a million pours dribble", "What drives the margin"][..]),
+        (
+            "/v1/tolerances",
+            tolerances.to_owned(),
+            &["of a million pours dribble", "What drives the margin"][..],
+        ),
         (PATH, request().to_string(), &["Accept: ", "limit", "Operating characteristic"]),
         (PATH, single.to_string(), &["More pieces needed"]),
         (PATH, pour_test.to_owned(), &["Operating characteristic with 45 pieces"]),
@@ -190,7 +209,10 @@ async fn lots_and_tolerances_come_as_pictures() {
         let picture = crate::ask::call(&service, "POST", path, &headers, body.into()).await;
         assert_eq!((picture.status, picture.header("content-type")), (StatusCode::OK, "image/svg+xml"));
         let text = std::str::from_utf8(&picture.body).unwrap();
-        assert!(text.starts_with("<svg ") && text.trim_end().ends_with("</svg>") && !text.contains("NaN"), "{path}");
+        assert!(
+            text.starts_with("<svg ") && text.trim_end().ends_with("</svg>") && !text.contains("NaN"),
+            "{path}"
+        );
         for words in shows {
             assert!(text.contains(words), "{path}: {words}");
         }

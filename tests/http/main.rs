@@ -20,5 +20,5 @@ mod readme;
 mod server;
 mod shell;
 mod sockets;
-mod tolerances;
 mod sweeps;
+mod tolerances;

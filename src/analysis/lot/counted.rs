@@ -108,9 +108,16 @@ impl PourTest {
             Decision::MorePiecesNeeded => {
                 let wanted = plan.map_or_else(
                     || "no plan keeps both risks in so small a lot".to_owned(),
-                    |plan| format!("{} pieces are needed, of which {} may dribble", plan.pieces, plan.accept_at_most),
+                    |plan| {
+                        format!(
+                            "{} pieces are needed, of which {} may dribble",
+                            plan.pieces, plan.accept_at_most
+                        )
+                    },
                 );
-                let detail = format!("{dribbled} of {pieces} dribbled, which tells neither quality from the other; {wanted}");
+                let detail = format!(
+                    "{dribbled} of {pieces} dribbled, which tells neither quality from the other; {wanted}"
+                );
                 Reason::new("too_few_pieces", detail)
             }
         }

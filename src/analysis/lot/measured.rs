@@ -176,8 +176,7 @@ impl Measurement<'_> {
         };
 
         let logarithms = self.logarithms(used);
-        let by_count =
-            decide_by_count(Population::Stream, pieces, beyond_used, self.points, count_plan);
+        let by_count = decide_by_count(Population::Stream, pieces, beyond_used, self.points, count_plan);
         let not_normal = normality.rejected_at(NOT_NORMAL_DECIDES);
         let (method, decision, deciding) = match (quality_used, criterion) {
             (Some(q), Some(criterion)) if !not_normal => (Method::Variables, criterion.decide(q), Some(q)),
@@ -275,9 +274,9 @@ impl Measurement<'_> {
             (Method::Variables | Method::VariablesOfLogarithms, Some(criterion)) => {
                 acceptance_probability(pieces, criterion.accept_from, fraction)
             }
-            _ => Population::Stream.consumer_number(pieces, self.points.consumer).map_or(0.0, |c| {
-                Population::Stream.acceptance_probability(pieces, c, fraction)
-            }),
+            _ => Population::Stream
+                .consumer_number(pieces, self.points.consumer)
+                .map_or(0.0, |c| Population::Stream.acceptance_probability(pieces, c, fraction)),
         };
         fractions(self.points).into_iter().map(|fraction| (fraction, accept(fraction))).collect()
     }
@@ -299,11 +298,17 @@ impl Measurement<'_> {
         let reason = match (deciding, found.criterion, found.decision) {
             (Some(q), Some(c), Decision::Accept) => Reason::new(
                 "quality_reached",
-                format!("{what} {q:.3} standard deviations within the limit used; {:.3} are needed with {pieces} pieces", c.accept_from),
+                format!(
+                    "{what} {q:.3} standard deviations within the limit used; {:.3} are needed with {pieces} pieces",
+                    c.accept_from
+                ),
             ),
             (Some(q), Some(c), Decision::Reject) => Reason::new(
                 "quality_missed",
-                format!("{what} {q:.3} standard deviations within the limit used; below {:.3} a lot of {pieces} pieces is rejected", c.reject_below),
+                format!(
+                    "{what} {q:.3} standard deviations within the limit used; below {:.3} a lot of {pieces} pieces is rejected",
+                    c.reject_below
+                ),
             ),
             (Some(q), Some(c), Decision::MorePiecesNeeded) => Reason::new(
                 "too_few_pieces",
@@ -343,12 +348,18 @@ impl Measurement<'_> {
             };
             warn("not_normal", format!("the values do not look normal (p = {p:.2e}): {then}"));
         } else if logarithms_normal && !no_spread && pieces < 8 {
-            warn("normality_unknown", format!("{pieces} values cannot show whether the characteristic is normal"));
+            warn(
+                "normality_unknown",
+                format!("{pieces} values cannot show whether the characteristic is normal"),
+            );
         }
         if found.beyond.0 > 0 {
             warn(
                 "parts_beyond_limit",
-                format!("{} of the measured parts lie beyond the limit; they are nonconforming whatever becomes of the lot", found.beyond.0),
+                format!(
+                    "{} of the measured parts lie beyond the limit; they are nonconforming whatever becomes of the lot",
+                    found.beyond.0
+                ),
             );
         }
         if let Some(s) = found.moments.standard_deviation
@@ -357,7 +368,10 @@ impl Measurement<'_> {
         {
             warn(
                 "coarse_gauge",
-                format!("the standard uncertainty of a measurement is {:.0} % of the standard deviation of the values (above 30 %: own judgement)", 100.0 * self.standard_uncertainty / s),
+                format!(
+                    "the standard uncertainty of a measurement is {:.0} % of the standard deviation of the values (above 30 %: own judgement)",
+                    100.0 * self.standard_uncertainty / s
+                ),
             );
         }
     }

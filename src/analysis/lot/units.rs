@@ -18,7 +18,7 @@ const NEAR: f64 = 0.25;
 /// Looks for two groups of values a familiar factor apart, with nothing between them: positive values only, four at least.
 #[must_use]
 pub fn mixed_units(values: &[f64]) -> Option<MixedUnits> {
-    if values.len() < 4 || values.iter().any(|x| !(*x > 0.0)) {
+    if values.len() < 4 || values.iter().any(|x| *x <= 0.0 || x.is_nan()) {
         return None;
     }
     let mut order: Vec<usize> = (0..values.len()).collect();

@@ -1,6 +1,8 @@
 //! Sampling by attributes: accept when at most c of n pieces are events.
 
-use super::{StatisticsFault, beta::binomial_cdf, hypergeometric::hypergeometric_cdf, variables_plan::RiskPoint};
+use super::{
+    StatisticsFault, beta::binomial_cdf, hypergeometric::hypergeometric_cdf, variables_plan::RiskPoint,
+};
 
 /// Where the pieces are drawn from.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]

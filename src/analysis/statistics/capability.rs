@@ -1,11 +1,6 @@
 //! Capability against one limit: the index, its exact lower bound, and the fraction nonconforming.
 
-use super::{
-    StatisticsFault,
-    beta::incomplete_beta,
-    noncentral_t::noncentrality,
-    normal::normal_cdf,
-};
+use super::{StatisticsFault, beta::incomplete_beta, noncentral_t::noncentrality, normal::normal_cdf};
 
 /// The capability index against one limit, quality/3 (P_pk of one lot; ISO 22514-2), of a quality (U − x̄)/s.
 #[must_use]

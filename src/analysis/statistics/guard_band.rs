@@ -39,7 +39,11 @@ impl Inspection {
     pub fn consumer_risk(&self) -> f64 {
         if self.uncertainty == 0.0 {
             let between = self.upper..self.accept_up_to;
-            return if between.is_empty() { 0.0 } else { self.below(between.end) - self.below(between.start) };
+            return if between.is_empty() {
+                0.0
+            } else {
+                self.below(between.end) - self.below(between.start)
+            };
         }
         let accepted = |x: f64| normal_cdf((self.accept_up_to - x) / self.uncertainty);
         self.integral(accepted, self.z(self.upper).max(-REACH), REACH)
@@ -50,7 +54,11 @@ impl Inspection {
     pub fn producer_risk(&self) -> f64 {
         if self.uncertainty == 0.0 {
             let between = self.accept_up_to..self.upper;
-            return if between.is_empty() { 0.0 } else { self.below(between.end) - self.below(between.start) };
+            return if between.is_empty() {
+                0.0
+            } else {
+                self.below(between.end) - self.below(between.start)
+            };
         }
         let rejected = |x: f64| normal_cdf((x - self.accept_up_to) / self.uncertainty);
         self.integral(rejected, -REACH, self.z(self.upper).min(REACH))
@@ -85,8 +93,7 @@ impl Inspection {
         if from >= to {
             return 0.0;
         }
-        let (low, high) =
-            ((turn - REACH * narrow).clamp(from, to), (turn + REACH * narrow).clamp(from, to));
+        let (low, high) = ((turn - REACH * narrow).clamp(from, to), (turn + REACH * narrow).clamp(from, to));
         let middle = turn.clamp(low, high);
         let sums: [f64; 4] = [
             sum_of(from, low, 1.0),
@@ -107,7 +114,8 @@ mod tests {
 
     #[test]
     fn a_perfect_gauge_leaves_only_what_the_guard_band_gives_away() {
-        let at = |accept_up_to| Inspection { mean: 0.0, spread: 1.0, uncertainty: 0.0, upper: 2.0, accept_up_to };
+        let at =
+            |accept_up_to| Inspection { mean: 0.0, spread: 1.0, uncertainty: 0.0, upper: 2.0, accept_up_to };
         assert_eq!((at(2.0).consumer_risk(), at(2.0).producer_risk()), (0.0, 0.0));
         let given_away = normal_cdf(2.0) - normal_cdf(1.5);
         assert!((at(1.5).producer_risk() - given_away).abs() < 1e-15);

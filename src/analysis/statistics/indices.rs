@@ -68,9 +68,9 @@ pub fn indices<F: FnMut(&[f64]) -> Option<f64>>(
     for scramble in 0..SCRAMBLES {
         let of_scramble =
             blocks.iter().zip(&pieces).filter(|(_, piece)| piece.0 == scramble).map(|(block, _)| block);
-        shares.push(scramble_shares(inputs, of_scramble)?);
+        shares.push(scramble_shares(inputs, &of_scramble)?);
     }
-    Some((0..inputs).map(|i| summary(shares.iter().map(|s| s[i]))).collect())
+    Some((0..inputs).map(|i| summary(&shares.iter().map(|s| s[i]))).collect())
 }
 
 /// Results at the points of one piece: at A, at B, and at A with input i from B, input by input.
@@ -123,7 +123,7 @@ const HALF_CELL: f64 = 1.0 / (1_u32 << 25) as f64;
 /// First-order and total share of every input over one scramble.
 fn scramble_shares<'a>(
     inputs: usize,
-    blocks: impl Iterator<Item = &'a Block> + Clone,
+    blocks: &(impl Iterator<Item = &'a Block> + Clone),
 ) -> Option<Vec<(f64, f64)>> {
     let values = || blocks.clone().flat_map(|block| block.a.iter().chain(&block.b));
     let count = values().count() as f64;
@@ -133,7 +133,7 @@ fn scramble_shares<'a>(
     let mean = values().sum::<f64>() / count;
     let variance = values().map(|x| (x - mean) * (x - mean)).sum::<f64>() / count;
     // A result that does not move beyond rounding has no variance to share out.
-    if !(variance > 1e-26 * (1.0 + mean * mean)) {
+    if variance.is_nan() || variance <= 1e-26 * (1.0 + mean * mean) {
         return None;
     }
     let mut sums = vec![(0.0, 0.0); inputs];
@@ -150,7 +150,7 @@ fn scramble_shares<'a>(
 }
 
 /// Mean and standard error over the scrambles.
-fn summary(shares: impl Iterator<Item = (f64, f64)> + Clone) -> Index {
+fn summary(shares: &(impl Iterator<Item = (f64, f64)> + Clone)) -> Index {
     let n = f64::from(SCRAMBLES);
     let of = |pick: fn(&(f64, f64)) -> f64| {
         let mean = shares.clone().map(|s| pick(&s)).sum::<f64>() / n;

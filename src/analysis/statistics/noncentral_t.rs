@@ -22,7 +22,7 @@ impl NoncentralT {
     /// Gauss–Legendre panels no wider than the spread of S and, around s = δ/t where Φ turns, than 1/|t|.
     #[must_use]
     pub fn cdf(&self, t: f64) -> f64 {
-        self.integral(t, |x| normal_cdf(x))
+        self.integral(t, normal_cdf)
     }
 
     /// P(T > t), with its own relative accuracy.

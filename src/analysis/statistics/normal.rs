@@ -19,7 +19,8 @@ pub fn ln_cdf(x: f64) -> f64 {
     }
     // Φ(x) ~ φ(x)/|x| (1 − 1/x² + 3/x⁴ − 15/x⁶ …) (Abramowitz & Stegun 1964, 26.2.12).
     let r = 1.0 / (x * x);
-    -0.5 * x * x - LN_ROOT_TWO_PI - libm::log(-x) + libm::log1p(r * (-1.0 + r * (3.0 + r * (-15.0 + r * (105.0 - 945.0 * r)))))
+    -0.5 * x * x - LN_ROOT_TWO_PI - libm::log(-x)
+        + libm::log1p(r * (-1.0 + r * (3.0 + r * (-15.0 + r * (105.0 - 945.0 * r)))))
 }
 
 /// The quantile: the `x` with Φ(x) = `p`, 0 < p < 1, to about 1e-15 relative.

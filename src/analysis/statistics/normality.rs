@@ -101,8 +101,7 @@ fn royston_weights(count: usize) -> Vec<f64> {
         return vec![core::f64::consts::FRAC_1_SQRT_2];
     }
     let n = count as f64;
-    let m: Vec<f64> =
-        (1..=half).map(|i| -normal_quantile((i as f64 - 0.375) / (n + 0.25))).collect();
+    let m: Vec<f64> = (1..=half).map(|i| -normal_quantile((i as f64 - 0.375) / (n + 0.25))).collect();
     let total: f64 = 2.0 * m.iter().map(|x| x * x).sum::<f64>();
     let root = total.sqrt();
     let small = 1.0 / n.sqrt();
@@ -110,7 +109,8 @@ fn royston_weights(count: usize) -> Vec<f64> {
     let mut weights = vec![outer];
     let square = |x: f64| x * x;
     let scale = if count > 5 {
-        let next = m[1] / root + polynomial(&[0.0, 0.042981, -0.293762, -1.752461, 5.682633, -3.582633], small);
+        let next =
+            m[1] / root + polynomial(&[0.0, 0.042981, -0.293762, -1.752461, 5.682633, -3.582633], small);
         weights.push(next);
         ((total - 2.0 * square(m[0]) - 2.0 * square(m[1])) / (1.0 - 2.0 * square(outer) - 2.0 * square(next)))
             .sqrt()

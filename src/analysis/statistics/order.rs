@@ -30,7 +30,8 @@ const BINS: usize = 4096;
 /// sample that is empty or not finite.
 #[must_use]
 pub fn quantiles(values: &[f64], probabilities: &[f64]) -> Vec<f64> {
-    let (low, high) = values.iter().fold((f64::INFINITY, f64::NEG_INFINITY), |(l, h), x| (x.min(l), x.max(h)));
+    let (low, high) =
+        values.iter().fold((f64::INFINITY, f64::NEG_INFINITY), |(l, h), x| (x.min(l), x.max(h)));
     let scale = BINS as f64 / (high - low);
     if !(low.is_finite() && high.is_finite()) {
         return Vec::new();
@@ -79,7 +80,10 @@ pub fn quantiles(values: &[f64], probabilities: &[f64]) -> Vec<f64> {
         let bin = bin_of_rank(rank);
         kept[bin].as_ref().map_or(f64::NAN, |values| values[rank - first_ranks[bin]])
     };
-    places.iter().map(|(below, above, share)| value(*below) + share * (value(*above) - value(*below))).collect()
+    places
+        .iter()
+        .map(|(below, above, share)| value(*below) + share * (value(*above) - value(*below)))
+        .collect()
 }
 
 #[cfg(test)]
@@ -90,8 +94,7 @@ mod tests {
     fn quantiles_of_a_large_sample_are_those_of_the_sorted_one() {
         let mut numbers = super::super::random::Sequence::new(3, 0).from(0);
         for count in [1, 2, 3, 10, 1000, 50_000] {
-            let values: Vec<f64> =
-                (0..count).map(|_| libm::tan(3.1 * (numbers.next_open() - 0.5))).collect();
+            let values: Vec<f64> = (0..count).map(|_| libm::tan(3.1 * (numbers.next_open() - 0.5))).collect();
             let probabilities = [0.0, 1e-3, 0.25, 0.5, 0.9, 0.999, 1.0];
             let mut sorted = values.clone();
             sorted.sort_by(f64::total_cmp);

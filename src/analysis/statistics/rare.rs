@@ -34,7 +34,7 @@ pub fn probable_point(
     for _ in 0..100 {
         let gradient = gradient(limit_state, &u)?;
         let steepness = dot(&gradient, &gradient);
-        if !(steepness > 0.0) {
+        if steepness.is_nan() || steepness <= 0.0 {
             return None;
         }
         // Projection of the linearised limit state: the direction is from u to it.
@@ -65,7 +65,8 @@ pub fn probable_point(
         if !moved {
             // No descent beyond rounding: settled if on the limit state and along the gradient.
             let distance = dot(&u, &u).sqrt();
-            let settled = length < 1e-3 * (1.0 + distance) && value.abs() < 1e-6 * scale && distance < FARTHEST;
+            let settled =
+                length < 1e-3 * (1.0 + distance) && value.abs() < 1e-6 * scale && distance < FARTHEST;
             return settled.then_some(ProbablePoint { at: u, distance });
         }
     }
@@ -147,9 +148,8 @@ impl Mixture {
     #[must_use]
     pub fn around(points: &[ProbablePoint], inputs: usize) -> Self {
         let nearest = points.first().map_or(0.0, |p| p.distance);
-        let weight = |p: &ProbablePoint| {
-            libm::exp(0.5 * (nearest * nearest - p.distance * p.distance)).max(0.1)
-        };
+        let weight =
+            |p: &ProbablePoint| libm::exp(0.5 * (nearest * nearest - p.distance * p.distance)).max(0.1);
         let total: f64 = points.iter().map(weight).sum();
         let mut mixture = Self { centres: vec![vec![0.0; inputs]], shares: vec![AT_ORIGIN] };
         for point in points {

@@ -1,6 +1,9 @@
 //! Student's t distribution.
 
-use super::{StatisticsFault, beta::{beta_quantile, tails}};
+use super::{
+    StatisticsFault,
+    beta::{beta_quantile, tails},
+};
 
 /// P(T ≤ `t`) with `degrees` of freedom (> 0).
 #[must_use]

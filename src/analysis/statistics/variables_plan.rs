@@ -1,11 +1,7 @@
 //! One-sided sampling by variables, standard deviation unknown: accept when the mean lies k standard deviations
 //! inside the limit.
 
-use super::{
-    StatisticsFault,
-    noncentral_t::NoncentralT,
-    normal::normal_quantile,
-};
+use super::{StatisticsFault, noncentral_t::NoncentralT, normal::normal_quantile};
 
 /// A point of the operating characteristic that a plan must respect.
 #[derive(Debug, Clone, Copy, PartialEq)]

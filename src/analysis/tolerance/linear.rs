@@ -39,8 +39,11 @@ impl Linear {
                 (run > 0.0).then(|| (a.0 - b.0) / run)
             };
             let flat = (step == 0.0).then_some(0.0);
-            sensitivities
-                .push(flat.or_else(|| slope(up, down)).or_else(|| slope(up, centre)).or_else(|| slope(centre, down)));
+            sensitivities.push(
+                flat.or_else(|| slope(up, down))
+                    .or_else(|| slope(up, centre))
+                    .or_else(|| slope(centre, down)),
+            );
         }
         let effects = sensitivities.iter().zip(drawn).map(|(c, d)| {
             c.map(|c| {

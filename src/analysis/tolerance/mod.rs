@@ -217,10 +217,8 @@ impl Study {
             }
         }
         if outcome.left_out > 0 {
-            let detail = format!(
-                "{} of {} trials made no case and were left out",
-                outcome.left_out, self.trials
-            );
+            let detail =
+                format!("{} of {} trials made no case and were left out", outcome.left_out, self.trials);
             warnings.push(Notice::new("trials_left_out", detail));
         }
         let (linear, sampled) = (outcome.linear.standard_uncertainty, outcome.margin.standard_deviation);

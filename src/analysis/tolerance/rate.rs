@@ -2,7 +2,12 @@
 
 use rayon::prelude::*;
 
-use super::{Failure, spread::Drawn, trial::Trial, trials::{RARE_STREAM, Trials}};
+use super::{
+    Failure,
+    spread::Drawn,
+    trial::Trial,
+    trials::{RARE_STREAM, Trials},
+};
 use crate::analysis::{
     statistics::{
         normal::{normal_quantile, quick_quantile},
@@ -73,7 +78,9 @@ impl<'a> Rates<'a> {
         if counted.value >= RARE {
             return Ok(rates);
         }
-        let Some(weighted) = Weighted::run(start, drawn, (seed, WEIGHTED_DRAWS), watch)? else { return Ok(rates) };
+        let Some(weighted) = Weighted::run(start, drawn, (seed, WEIGHTED_DRAWS), watch)? else {
+            return Ok(rates);
+        };
         let z = normal_quantile(0.5 * (1.0 + confidence));
         let count = weighted.below(0.0);
         let Some((low, high)) = count.interval(z) else { return Ok(rates) };
@@ -254,7 +261,8 @@ mod tests {
         let spread = (0.95 * 0.05 * SEEDS as f64).sqrt();
         for rate in [3e-5, 1e-7] {
             let hits = coverage(rate, |start, drawn, seed| {
-                let found = watched(|watch| Weighted::run(start, drawn, (seed, 2000), watch)).unwrap().unwrap();
+                let found =
+                    watched(|watch| Weighted::run(start, drawn, (seed, 2000), watch)).unwrap().unwrap();
                 found.below(0.0).interval(1.96).unwrap()
             }) as f64;
             assert!((hits - 0.95 * SEEDS as f64).abs() < 3.5 * spread, "{rate} {hits}");

@@ -239,8 +239,7 @@ mod tests {
         for spread in all() {
             let drawn = Drawn::new(&spread, &EDGE_RADIUS).unwrap();
             let n = 200_000;
-            let values: Vec<f64> =
-                (0..n).map(|i| drawn.at((f64::from(i) + 0.5) / f64::from(n))).collect();
+            let values: Vec<f64> = (0..n).map(|i| drawn.at((f64::from(i) + 0.5) / f64::from(n))).collect();
             let mean = values.iter().sum::<f64>() / f64::from(n);
             let variance = values.iter().map(|x| (x - mean) * (x - mean)).sum::<f64>() / f64::from(n);
             assert!((mean - spread.mean()).abs() < 1e-4, "{spread:?} {mean}");

@@ -40,10 +40,8 @@ impl Summary {
     pub(super) fn of(margins: &[f64]) -> Self {
         let n = margins.len() as f64;
         let total = |f: &(dyn Fn(f64) -> f64 + Sync)| {
-            let parts: Vec<f64> = margins
-                .par_chunks(AT_A_TIME)
-                .map(|chunk| chunk.iter().map(|x| f(*x)).sum())
-                .collect();
+            let parts: Vec<f64> =
+                margins.par_chunks(AT_A_TIME).map(|chunk| chunk.iter().map(|x| f(*x)).sum()).collect();
             parts.iter().sum::<f64>()
         };
         let mean = total(&|x| x) / n;

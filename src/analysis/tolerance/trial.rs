@@ -7,9 +7,9 @@ use crate::{
     analysis::{
         balance::{Approach, Prepared, approach, prepare},
         case::Case,
+        evaluation::stream_fault,
         fault::Fault,
         field::Field,
-        evaluation::stream_fault,
         resolve::{Resolved, resolve_liquid},
         spec::{Spec, SurfaceSpec},
     },
@@ -120,8 +120,15 @@ impl<'a> Trial<'a> {
 #[cfg(test)]
 pub(super) mod tests {
     use super::*;
-    use crate::analysis::{decision::decide, spec::{LiquidSpec, OuterFace, SectionSpec, Uncertainties}};
-    use crate::physics::{liquid, separation::closed_form::DEFAULT_SET, surface::{self, State}};
+    use crate::analysis::{
+        decision::decide,
+        spec::{LiquidSpec, OuterFace, SectionSpec, Uncertainties},
+    };
+    use crate::physics::{
+        liquid,
+        separation::closed_form::DEFAULT_SET,
+        surface::{self, State},
+    };
 
     fn spec() -> Spec {
         Spec {

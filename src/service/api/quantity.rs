@@ -199,7 +199,7 @@ impl ToSchema for Number {
 pub(super) fn whole_number<'de, D: Deserializer<'de>>(deserializer: D) -> Result<u64, D::Error> {
     let number = f64::deserialize(deserializer)?;
     // Up to here doubles hold every whole number.
-    if number >= 0.0 && number <= 9_007_199_254_740_991.0 && number == libm::trunc(number) {
+    if (0.0..=9_007_199_254_740_991.0).contains(&number) && number == libm::trunc(number) {
         Ok(number as u64)
     } else {
         Err(de::Error::custom("a whole number is needed"))

@@ -5,7 +5,8 @@ use std::fmt::Write as _;
 /// The pictures, each as this module's siblings write it, one below the other.
 #[must_use]
 pub fn stack(pictures: &[String]) -> String {
-    let sizes: Vec<[f64; 2]> = pictures.iter().map(|p| [size(p, " width=\""), size(p, " height=\"")]).collect();
+    let sizes: Vec<[f64; 2]> =
+        pictures.iter().map(|p| [size(p, " width=\""), size(p, " height=\"")]).collect();
     let width = sizes.iter().map(|s| s[0]).fold(0.0, f64::max);
     let height: f64 = sizes.iter().map(|s| s[1]).sum();
     let mut out = String::with_capacity(pictures.iter().map(String::len).sum::<usize>() + 512);
@@ -39,10 +40,15 @@ mod tests {
     #[test]
     fn pictures_stand_below_one_another_under_names_of_their_own() {
         let picture = |w: u32, h: u32| {
-            format!("<svg xmlns=\"x\" role=\"img\" width=\"{w}\" height=\"{h}\"><pattern id=\"lines-wide\"/><rect fill=\"url(#lines-wide)\"/></svg>\n")
+            format!(
+                "<svg xmlns=\"x\" role=\"img\" width=\"{w}\" height=\"{h}\"><pattern id=\"lines-wide\"/><rect fill=\"url(#lines-wide)\"/></svg>\n"
+            )
         };
         let whole = stack(&[picture(100, 40), picture(80, 50)]);
-        assert!(whole.starts_with("<svg xmlns=\"http://www.w3.org/2000/svg\" width=\"100\" height=\"90\""), "{whole}");
+        assert!(
+            whole.starts_with("<svg xmlns=\"http://www.w3.org/2000/svg\" width=\"100\" height=\"90\""),
+            "{whole}"
+        );
         assert!(whole.contains("<svg y=\"40\" xmlns=\"x\""));
         assert!(whole.contains("id=\"p1-lines-wide\"") && whole.contains("url(#p1-lines-wide)"));
         assert!(!whole.contains("id=\"lines-wide\""));

@@ -14,10 +14,7 @@ use utoipa::{
 
 use crate::{
     analysis::{fault::Fault, lot::mixed_units},
-    service::{
-        api::quantity::whole_number,
-        nearest::quoted,
-    },
+    service::{api::quantity::whole_number, nearest::quoted},
 };
 
 /// What is known of the lot: exactly one member names it.
@@ -62,7 +59,10 @@ impl PartialSchema for ValueRequest {
     fn schema() -> RefOr<Schema> {
         let number = || ObjectBuilder::new().schema_type(Type::Number);
         let named = ObjectBuilder::new()
-            .property("part", ObjectBuilder::new().schema_type(Type::String).description(Some("Name of the part.")))
+            .property(
+                "part",
+                ObjectBuilder::new().schema_type(Type::String).description(Some("Name of the part.")),
+            )
             .property("value", number().description(Some("Its value.")))
             .required("part")
             .required("value")

@@ -56,9 +56,7 @@ impl LimitRequest {
         let (kind, value, sense) = match self {
             Self::FromDesign(request) => {
                 let plan = request.as_ref().clone().filled().plan();
-                return plan
-                    .map(LimitSought::Design)
-                    .map_err(|faults| within("/limit/from_design", faults));
+                return plan.map(LimitSought::Design).map_err(|faults| within("/limit/from_design", faults));
             }
             Self::Upper(bound) => ("upper", bound.value, Sense::AtMost),
             Self::Lower(bound) => ("lower", bound.value, Sense::AtLeast),

@@ -90,7 +90,13 @@ fn answer(
             }
             serde_json::to_vec(&LotAnswer::of_pour_test(&found, model))
         }
-        Question::Measured { values, gauge: [standard_uncertainty, repeatability, bias], limit, points, unit } => {
+        Question::Measured {
+            values,
+            gauge: [standard_uncertainty, repeatability, bias],
+            limit,
+            points,
+            unit,
+        } => {
             let found = limit.find(cancelled).map_err(|fault| invalid(vec![fault]))?;
             let found_limit = found.ok_or_else(|| Problem::internal("The work was cancelled."))?;
             let measurement = Measurement {

@@ -1,7 +1,7 @@
 //! A lot as a picture: the values with limit and guard band, and the operating characteristic.
 
 use crate::{
-    analysis::lot::{Counted, Decision, Measured, Measurement, PourTest, Points, Sense},
+    analysis::lot::{Counted, Decision, Measured, Measurement, Points, PourTest, Sense},
     service::{
         fingerprint::ModelAnswer,
         render::{
@@ -12,7 +12,10 @@ use crate::{
 };
 
 fn note(model: &ModelAnswer) -> String {
-    format!("dribble-risk {}, coefficients {}, fingerprint {}", model.version, model.coefficients, model.fingerprint)
+    format!(
+        "dribble-risk {}, coefficients {}, fingerprint {}",
+        model.version, model.coefficients, model.fingerprint
+    )
 }
 
 const fn says(decision: Decision) -> &'static str {
@@ -35,7 +38,8 @@ pub(super) fn of_measured(
     let (edges, counts) = classes(&values);
     let title = format!("{}: {}", says(found.decision), found.reasons.first().map_or("", |r| &r.detail));
     let moments = &found.moments;
-    let spread = moments.standard_deviation.map_or_else(String::new, |s| format!(", sd {}", with_unit(s, unit)));
+    let spread =
+        moments.standard_deviation.map_or_else(String::new, |s| format!(", sd {}", with_unit(s, unit)));
     let capability = found.performance.map_or_else(String::new, |(ppk, low)| {
         format!(" · P_pk {}, at least {}", significant(ppk, 3), significant(low, 3))
     });

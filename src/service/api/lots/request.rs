@@ -12,7 +12,7 @@ use super::{
 use crate::{
     analysis::{
         fault::Fault,
-        lot::{PourTest, Points},
+        lot::{Points, PourTest},
         statistics::variables_plan::{RiskPoint, VariablesPlan},
     },
     service::{

@@ -196,10 +196,9 @@ impl<'a> TolerancesAnswer<'a> {
                 low: ppm(*low),
                 standard_uncertainty: Number(outcome.model_doubt),
             },
-            drivers: outcome
-                .drivers
-                .as_ref()
-                .map(|d| pointers().zip(d).map(|(pointer, index)| DriverAnswer::new(pointer, index)).collect()),
+            drivers: outcome.drivers.as_ref().map(|d| {
+                pointers().zip(d).map(|(pointer, index)| DriverAnswer::new(pointer, index)).collect()
+            }),
             histogram: HistogramAnswer {
                 counts: &margin.histogram.counts,
                 edges: margin.histogram.edges.iter().copied().map(Number).collect(),

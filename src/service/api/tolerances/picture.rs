@@ -27,7 +27,8 @@ pub(super) fn picture(study: &Study, outcome: &Outcome, model: &ModelAnswer) -> 
 fn margins(study: &Study, outcome: &Outcome, note: &str) -> String {
     let ppm = |share: f64| significant(1e6 * share, 3);
     let rate = &outcome.rate;
-    let title = format!("{} of a million pours dribble ({} to {})", ppm(rate.value), ppm(rate.low), ppm(rate.high));
+    let title =
+        format!("{} of a million pours dribble ({} to {})", ppm(rate.value), ppm(rate.low), ppm(rate.high));
     let (low, high) = outcome.rate_with_model_doubt;
     let subtitle = format!(
         "{} trials, seed {} · sampling error at {} confidence; with the models' doubt {} to {} ppm",

@@ -100,8 +100,7 @@ impl TolerancesRequest {
             let at = format!("/varying/{i}");
             let spread = item.spread.spread(&format!("{at}/spread"));
             let spread = spread.map_err(|found| faults.extend(found)).ok();
-            let Some(base) = &base else { continue };
-            match field_at(&self.base, base, &item.pointer, format!("{at}/pointer")) {
+            match field_at(&self.base, base.as_ref(), &item.pointer, format!("{at}/pointer")) {
                 Err(fault) => faults.push(fault),
                 Ok(field) if varying.iter().any(|known| known.field == field) => {
                     let detail = format!("{} varies already; give it one spread", item.pointer);

@@ -144,7 +144,7 @@ impl Check<'_> {
     }
 
     fn number(&mut self, member: &str, value: f64) {
-        if !(value.abs() <= LARGEST) {
+        if value.is_nan() || value.abs() > LARGEST {
             let detail = format!("must be between {} and {LARGEST}", -LARGEST);
             self.fault(member, "out_of_range", detail, (-LARGEST, LARGEST));
         }
@@ -152,7 +152,8 @@ impl Check<'_> {
 
     fn above_zero(&mut self, member: &str, value: f64, most: f64) {
         if !(value > 0.0 && value <= most) {
-            let detail = format!("must be above 0 and at most {most}; what does not vary belongs in the base");
+            let detail =
+                format!("must be above 0 and at most {most}; what does not vary belongs in the base");
             self.fault(member, "out_of_range", detail, (0.0, most));
         }
     }
