@@ -16,6 +16,7 @@ mod page;
 mod panels;
 mod pen;
 mod probability;
+mod stack;
 mod svg;
 mod sweep;
 mod text;
@@ -33,6 +34,7 @@ pub(in crate::service) use number::{percent, significant, with_unit};
 pub use page::Heading;
 pub use panels::{Panel, Panels, Span, panels};
 pub use probability::{ProbabilityChart, Seen, probability};
+pub use stack::stack;
 pub use sweep::{Asked, Drawn, FEW, NotDrawable, SweepAxis, SweepTable, drawable, sweep, sweep_picture};
 pub use vessel::{MOST_MOMENTS, VesselMoment, VesselPicture, VesselStream, vessel};
 
