@@ -5,7 +5,7 @@
 
 use crate::{
     analysis::{
-        balance::{Approach, Prepared, approach, prepare},
+        balance::{Approach, Prepared, approach, prepare, threshold},
         case::Case,
         evaluation::stream_fault,
         fault::Fault,
@@ -103,7 +103,8 @@ impl<'a> Trial<'a> {
         if moves.rim {
             edge.rim = RimTerms::of(set, spec.radius_mm * quantity::EDGE_RADIUS.to_si);
         }
-        Some(stream.ln_weber - edge.edge.threshold_for(set, &stream.terms, &edge.rim).ln_critical_weber)
+        let held = threshold(set, case.calibration.as_ref(), &stream.terms, (&edge.edge, &edge.rim));
+        Some(stream.ln_weber - held.ln_critical_weber)
     }
 
     /// Why values make no case: the faults of the question with the fields at these values.
@@ -154,6 +155,7 @@ pub(super) mod tests {
             outer_face: OuterFace::Dry,
             confidence: 0.95,
             uncertainty: Uncertainties::default(),
+            calibration: None,
             coefficients: DEFAULT_SET,
         }
     }
