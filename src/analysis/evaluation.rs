@@ -130,6 +130,7 @@ fn contributions(resolved: &Resolved, decision: &Decision) -> Vec<Contribution> 
     shares
 }
 
-fn stream_fault(fault: StreamFault) -> Vec<Fault> {
+/// A stream that cannot be computed, as a fault of the question.
+pub(super) fn stream_fault(fault: StreamFault) -> Vec<Fault> {
     vec![Fault::new("/lip", "not_computable", format!("the stream at this lip cannot be computed: {fault}"))]
 }

@@ -110,6 +110,18 @@ impl Spec {
         Ok(Condition { liquid, wetting_liquid, angles, assumed, contact_angle: counts.angle, inputs })
     }
 
+    /// The contact angle that counts, rad, with this liquid on the surface, uncertainties left out; `None` where liquid and surface
+    /// contradict each other.
+    #[must_use]
+    pub fn contact_angle(&self, liquid: &Properties) -> Option<f64> {
+        let (angles, _) =
+            self.resolve_surface(Some(&wetting_liquid(&self.liquid, liquid)), &mut Vec::new())?;
+        Some(match self.outer_face {
+            OuterFace::Dry => angles.advancing.angle,
+            OuterFace::Wet => angles.receding.angle,
+        })
+    }
+
     /// Whether the outer wall falls away from the edge at all: the turn exceeds the rise of the floor.
     #[must_use]
     pub fn wall_falls(&self) -> bool {

@@ -7,5 +7,6 @@ mod facts;
 mod hydraulics;
 mod liquids;
 mod pour;
+mod statistics;
 mod vessel;
 mod wetting;

@@ -12,6 +12,7 @@ mod inside;
 pub mod lip;
 pub mod liquid;
 pub mod liquids;
+pub mod lots;
 pub mod metrics;
 pub mod notice;
 pub mod pours;
@@ -21,6 +22,7 @@ pub mod quantity;
 pub mod surface;
 pub mod surfaces;
 pub mod sweeps;
+pub mod tolerances;
 pub mod version;
 
 use http::HeaderValue;

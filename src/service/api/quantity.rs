@@ -195,6 +195,17 @@ impl ToSchema for Number {
     }
 }
 
+/// Reads a whole number that is not negative, written as such or as `2.0`.
+pub(super) fn whole_number<'de, D: Deserializer<'de>>(deserializer: D) -> Result<u64, D::Error> {
+    let number = f64::deserialize(deserializer)?;
+    // Up to here doubles hold every whole number.
+    if (0.0..=9_007_199_254_740_991.0).contains(&number) && number == libm::trunc(number) {
+        Ok(number as u64)
+    } else {
+        Err(de::Error::custom("a whole number is needed"))
+    }
+}
+
 /// Reads a member that may be left out but, when given, must be a `T`: `null` is no value.
 pub(super) fn given<'de, D: Deserializer<'de>, T: Deserialize<'de>>(
     deserializer: D,

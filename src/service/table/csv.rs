@@ -2,6 +2,9 @@
 
 use super::{Cells, Head};
 
+/// What is said of it on its way out (RFC 4180, 3).
+pub const CONTENT_TYPE: &str = "text/csv; charset=utf-8; header=present";
+
 /// The line of names.
 #[must_use]
 pub fn header(heads: &[Head]) -> Vec<u8> {

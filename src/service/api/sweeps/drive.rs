@@ -1,7 +1,6 @@
 //! A sweep on its way out: pieces are computed on the threads kept for long work, a few ahead of the caller, and handed over in order.
 
 use std::{
-    collections::HashMap,
     ops::Range,
     sync::{
         Arc, OnceLock,
@@ -182,12 +181,7 @@ async fn write_csv(work: Arc<Work>, out: &Out) -> Result<(), Stopped> {
 
 async fn write_arrow(work: Arc<Work>, out: &Out) -> Result<(), Stopped> {
     let plan = &work.job.plan;
-    let ModelAnswer { version, coefficients, fingerprint } = &work.job.model;
-    let about = HashMap::from([
-        ("version".to_owned(), (*version).to_owned()),
-        ("coefficients".to_owned(), (*coefficients).to_owned()),
-        ("fingerprint".to_owned(), fingerprint.clone()),
-    ]);
+    let about = arrow::about(&work.job.model);
     let schema = arrow::schema(&heads(&plan.axes, &plan.outputs), about);
     let mut written = arrow::Stream::new(&schema).map_err(|_| Stopped::Failed)?;
     let batch = {
