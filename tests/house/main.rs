@@ -82,3 +82,15 @@ fn only_one_place_computes_the_numbers_of_a_stream() {
         }
     }
 }
+
+#[test]
+fn only_one_place_asks_the_closed_form_for_a_threshold() {
+    // Elsewhere a calibration would be forgotten.
+    for storey in ["analysis", "service"] {
+        for (path, text) in sources(storey) {
+            let here = path.ends_with("analysis/balance.rs") || path.ends_with("calibration/correction.rs");
+            let asks = text.contains(".threshold_for(") || text.contains(".threshold(");
+            assert!(here || !asks, "{}", path.display());
+        }
+    }
+}
