@@ -158,7 +158,6 @@ pub(super) mod tests {
             uncertainty: Uncertainties::default(),
             calibration: None,
             coefficients: DEFAULT_SET,
-            calibration: None,
         }
     }
 
