@@ -80,7 +80,8 @@ impl EdgeDoubt {
         match *shift {
             Shift::One(Primary::Turn, by) => self.turn += by * by,
             Shift::One(Primary::EdgeRadius, by) if radius > 0.0 => {
-                self.radius += (by / radius) * (by / radius);
+                // Of a radius of nothing but name u/r overflows, while the slope in ln r is zero to the last digit: their product must stay a number.
+                self.radius += ((by / radius) * (by / radius)).min(f64::MAX);
             }
             _ => {}
         }

@@ -477,6 +477,19 @@ async fn impossible_states_are_refused_with_what_would_be_possible() {
 }
 
 #[tokio::test]
+async fn a_radius_of_nothing_but_name_is_a_sharp_edge() {
+    let service = service(&state(|_| {}));
+    let at = async |radius: f64| ok(&service, &changed("/lip/edge/rounded/radius_mm", json!(radius))).await;
+    let sharp = at(0.0).await;
+    for radius in [1e-30, 1e-100, 1e-153, 1e-200, 1e-237, 1e-300, 5e-324] {
+        let answer = at(radius).await;
+        for part in ["verdict", "safety_factor", "dribble_probability"] {
+            assert_eq!(answer[part], sharp[part], "{radius}");
+        }
+    }
+}
+
+#[tokio::test]
 async fn whole_number_floats_and_defaults_are_accepted() {
     let service = service(&state(|_| {}));
     let least = json!({
