@@ -43,7 +43,8 @@ fn physics_knows_nothing_above_it() {
             "serde::",
             "axum",
             "tokio",
-            "hyper",
+            "hyper::",
+            "hyper_util",
             "tracing",
             "std::time",
             "std::env",
@@ -59,7 +60,18 @@ fn physics_knows_nothing_above_it() {
 fn analysis_knows_nothing_above_it() {
     forbid(
         "analysis",
-        &["crate::service", "serde", "axum", "tokio", "hyper", "tracing", "std::time", "std::env", "std::fs"],
+        &[
+            "crate::service",
+            "serde",
+            "axum",
+            "tokio",
+            "hyper::",
+            "hyper_util",
+            "tracing",
+            "std::time",
+            "std::env",
+            "std::fs",
+        ],
     );
 }
 
