@@ -15,7 +15,10 @@ use dribble_risk::{
         separation::closed_form::DEFAULT_SET,
         surface::{self, State},
     },
-    service::api::evaluations::{EXAMPLE, evaluate_json},
+    service::api::{
+        calibrations,
+        evaluations::{EXAMPLE, EvaluationRequest, evaluate_json},
+    },
 };
 
 #[global_allocator]
@@ -44,6 +47,7 @@ fn level() -> Spec {
         confidence: 0.95,
         uncertainty: Uncertainties::default(),
         coefficients: DEFAULT_SET,
+        calibration: None,
     }
 }
 
@@ -82,6 +86,31 @@ fn core(c: &mut Criterion) {
             b.iter(|| evaluate(black_box(&spec), Include::ALL, &[]).unwrap().decision.margin);
         });
     }
+    let mut bench: serde_json::Value = serde_json::from_str(calibrations::EXAMPLE).unwrap();
+    let rows = bench["observations"].as_array().unwrap().clone();
+    let many = (0..200).map(|i| {
+        let mut row = rows[i % rows.len()].clone();
+        row["name"] = format!("pour {i}").into();
+        row
+    });
+    bench["observations"] = many.collect();
+    let bench = bench.to_string();
+    c.bench_function("JSON to JSON: a calibration with 200 rows", |b| {
+        b.iter(|| calibrations::calibrate_json(black_box(bench.as_bytes())).unwrap().len());
+    });
+    let calibration: serde_json::Value =
+        serde_json::from_slice(&calibrations::calibrate_json(bench.as_bytes()).unwrap()).unwrap();
+    let mut calibrated: serde_json::Value = serde_json::from_str(EXAMPLE).unwrap();
+    calibrated["calibration"] = calibration["calibration"].clone();
+    let calibrated_text = calibrated.to_string();
+    c.bench_function("JSON to JSON: the example with a calibration, everything", |b| {
+        b.iter(|| evaluate_json(black_box(calibrated_text.as_bytes())).unwrap().len());
+    });
+    let request: EvaluationRequest = serde_json::from_value(calibrated).unwrap();
+    let case = request.question().unwrap().0.resolve().unwrap().case;
+    c.bench_function("decide: the example with a calibration", |b| {
+        b.iter(|| decide(black_box(&case)).unwrap().margin);
+    });
     c.bench_function("JSON to JSON: the example, everything", |b| {
         b.iter(|| evaluate_json(black_box(EXAMPLE.as_bytes())).unwrap().len());
     });

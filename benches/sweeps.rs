@@ -72,6 +72,7 @@ fn level() -> Spec {
         confidence: 0.95,
         uncertainty: Uncertainties::default(),
         coefficients: DEFAULT_SET,
+        calibration: None,
     }
 }
 
@@ -219,10 +220,17 @@ fn hang_up(server: &Server) {
         r#""/lip/run/slope_deg","from":1,"to":9"#,
     );
     stream.write_all(&post("/v1/sweeps", "text/csv", &body)).unwrap();
-    let mut buffer = [0; 4096];
-    let _ = stream.read(&mut buffer).unwrap();
-    assert!(buffer.starts_with(b"HTTP/1.1 200"), "{}", String::from_utf8_lossy(&buffer));
-    std::thread::sleep(Duration::from_millis(300));
+    let mut buffer = vec![0; 1 << 18];
+    let begun = Instant::now();
+    let (mut total, before) = (0, server.cpu_seconds());
+    while begun.elapsed() < Duration::from_millis(500) {
+        total += stream.read(&mut buffer).unwrap();
+    }
+    println!(
+        "hang-up: {:.0} ms of processor time in 500 ms of work ({:.1} MB read)",
+        (server.cpu_seconds() - before) * 1e3,
+        total as f64 / 1e6
+    );
     let working = server.cpu_seconds();
     drop(stream);
     std::thread::sleep(Duration::from_millis(100));

@@ -1,6 +1,9 @@
 //! Inertia against wetting at one pour rate: the stream, its numbers, its threshold. No other place computes a Weber number.
 
-use super::case::{Case, Primary, Slopes};
+use super::{
+    calibration::{Calibration, Place},
+    case::{Case, Primary, Slopes},
+};
 use crate::physics::{
     lip::{Lip, Run, Section},
     liquid::Liquid,
@@ -88,6 +91,34 @@ pub fn approach(case: &Case, flow: f64) -> Result<Approach, StreamFault> {
     Ok(Approach::of(case.coefficients, &case.liquid, stream, stream.thickness))
 }
 
+/// The threshold of an edge for a stream, corrected by the calibration if there is one.
+#[inline(always)]
+#[must_use]
+pub fn threshold(
+    set: &CoefficientSet,
+    calibration: Option<&Calibration>,
+    film: &FilmTerms,
+    (edge, rim): (&Edge, &RimTerms),
+) -> Threshold {
+    let threshold = edge.threshold_for(set, film, rim);
+    match calibration {
+        None => threshold,
+        Some(calibration) => calibration.corrected(&threshold, &place(film, (edge, rim))),
+    }
+}
+
+/// Where on the closed form a stream and an edge lie.
+#[must_use]
+pub fn place(film: &FilmTerms, (edge, rim): (&Edge, &RimTerms)) -> Place {
+    Place {
+        radius_ratio: rim.radius() / film.thickness(),
+        contact_angle: edge.contact_angle(),
+        turn: edge.turn(),
+        reynolds: film.reynolds(),
+        froude: film.froude(),
+    }
+}
+
 /// The balance of `case` at pour rate `flow` (m³/s) on a prepared edge.
 ///
 /// # Errors
@@ -111,7 +142,8 @@ pub fn film_numbers(case: &Case, flow: f64) -> Result<Numbers, StreamFault> {
 #[must_use]
 pub fn weigh(case: &Case, edge: &Prepared, stream: Stream, thickness: f64) -> Balance {
     let approach = Approach::of(case.coefficients, &case.liquid, stream, thickness);
-    let threshold = edge.edge.threshold_for(case.coefficients, &approach.terms, &edge.rim);
+    let threshold =
+        threshold(case.coefficients, case.calibration.as_ref(), &approach.terms, (&edge.edge, &edge.rim));
     Balance {
         stream,
         numbers: approach.numbers_at(&case.liquid, case.lip.edge.radius),
@@ -123,6 +155,7 @@ pub fn weigh(case: &Case, edge: &Prepared, stream: Stream, thickness: f64) -> Ba
 /// Changes of ln(safety factor) per unit of ln thickness and of ln speed of the stream.
 ///
 /// ln S = ln We − ln We_c with We = ρU²h/γ, Re = ρUh/μ, Fr = U²/(gh), r/h.
+#[inline(always)]
 #[must_use]
 pub fn by_film(t: &Threshold) -> Pair {
     Pair {
@@ -161,6 +194,7 @@ pub struct Pair {
 
 impl Pair {
     /// What an input that changes thickness and speed by `change` does.
+    #[inline(always)]
     #[must_use]
     pub fn through(self, change: Self) -> f64 {
         self.thickness * change.thickness + self.speed * change.speed

@@ -1,6 +1,6 @@
 //! One case, ready to be decided: SI units, liquid and surface resolved, every uncertain input with its weight.
 
-use super::field::Field;
+use super::{calibration::Calibration, field::Field};
 use crate::physics::{lip::Lip, liquid::Liquid, separation::closed_form::CoefficientSet};
 use arrayvec::ArrayVec;
 
@@ -23,6 +23,8 @@ pub struct Case {
     pub confidence: Confidence,
     /// Coefficients of the closed form.
     pub coefficients: &'static CoefficientSet,
+    /// What bench pours have taught of them, if anything.
+    pub calibration: Option<Calibration>,
     /// Uncertain inputs.
     pub inputs: Inputs,
 }

@@ -1,14 +1,15 @@
 //! The one function that decides a case.
 
 use super::{
-    balance::{Approach, Balance, StreamSlopes, approach, prepare, slopes},
+    balance::{Approach, Balance, StreamSlopes, approach, place, prepare, slopes, threshold},
+    calibration::Calibration,
     case::{Case, Input, Primary, Shift, Slopes, Source},
     doubt::{Doubt, EdgeDoubt, StreamDoubt},
 };
 use crate::physics::{
     numerics::normal_cdf,
     separation::{
-        closed_form::{CoefficientSet, Edge, Reach, RimTerms, Threshold},
+        closed_form::{CoefficientSet, Edge, FilmTerms, Reach, RimTerms, Threshold},
         numbers::FREE_SHEET_WEBER,
     },
     stream::{Stream, StreamFault},
@@ -126,23 +127,47 @@ pub struct Judgement {
     pub verdict: Verdict,
 }
 
+/// What a judgement looks at of a stream.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Approaching {
+    /// Its share of the closed form.
+    pub terms: FilmTerms,
+    /// ln We.
+    pub ln_weber: f64,
+    /// We.
+    pub weber: f64,
+}
+
+impl From<&Approach> for Approaching {
+    #[inline(always)]
+    fn from(approach: &Approach) -> Self {
+        Self { terms: approach.terms, ln_weber: approach.ln_weber, weber: approach.numbers.weber }
+    }
+}
+
 /// Judges a stream at an edge: the last step of every decision, single or one of many.
-#[inline]
+#[inline(always)]
 #[must_use]
 pub fn judge(
     set: &CoefficientSet,
+    calibration: Option<&Calibration>,
     confidence: f64,
-    approach: &Approach,
+    approach: &Approaching,
     (edge, rim): (&Edge, &RimTerms),
     (doubt, edge_doubt, stream_doubt): (&Doubt, EdgeDoubt, &StreamDoubt),
 ) -> Judgement {
-    let threshold = edge.threshold_for(set, &approach.terms, rim);
-    let reach = edge.reach_for(set, &approach.terms, rim);
+    let threshold = threshold(set, calibration, &approach.terms, (edge, rim));
+    let mut reach = edge.reach_for(set, &approach.terms, rim);
+    if let Some(calibration) = calibration {
+        let place = place(&approach.terms, (edge, rim));
+        reach.standard_uncertainty =
+            calibration.standard_uncertainty(reach.standard_uncertainty, set, &place);
+    }
     let margin = approach.ln_weber - threshold.ln_critical_weber;
     let own = reach.standard_uncertainty * reach.standard_uncertainty;
     let standard_uncertainty = (doubt.variance(&threshold, edge_doubt, stream_doubt) + own).sqrt();
     let dribble_probability = normal_cdf(-margin / standard_uncertainty);
-    let free_sheet = approach.numbers.weber >= FREE_SHEET_WEBER;
+    let free_sheet = approach.weber >= FREE_SHEET_WEBER;
     let verdict = verdict(dribble_probability, confidence, free_sheet);
     Judgement { threshold, reach, margin, standard_uncertainty, dribble_probability, verdict }
 }
@@ -166,8 +191,9 @@ pub fn decide(case: &Case) -> Result<Decision, StreamFault> {
     }
     let judged = judge(
         case.coefficients,
+        case.calibration.as_ref(),
         case.confidence.level,
-        &approach,
+        &Approaching::from(&approach),
         (&edge.edge, &edge.rim),
         (&doubt, edge_doubt, &stream_doubt),
     );
@@ -187,7 +213,8 @@ pub fn decide(case: &Case) -> Result<Decision, StreamFault> {
     })
 }
 
-fn verdict(probability: f64, confidence: f64, free_sheet: bool) -> Verdict {
+#[inline(always)]
+pub(super) fn verdict(probability: f64, confidence: f64, free_sheet: bool) -> Verdict {
     if probability >= confidence {
         Verdict::Dribbles
     } else if probability <= 1.0 - confidence && free_sheet {

@@ -1,76 +1,67 @@
 //! The uncertainty of a question, gathered by what it moves, so that the variance of ln(safety factor) takes a few products whatever the number
 //! of inputs.
 
-use arrayvec::ArrayVec;
-
 use super::{
     balance::{Pair, StreamSlopes, by_film},
     case::{Primary, Shift},
 };
 use crate::physics::separation::closed_form::Threshold;
 
-/// The most inputs that shift the liquid as a whole: temperature and every component there is.
-const MOST_LIQUID: usize = 7;
-
-/// Variances of what the threshold or the liquid's properties answer to, in the units of [`Primary`].
-#[derive(Debug, Clone, Default, PartialEq)]
+/// Variance that liquid and surface bring in: a quadratic form in the slopes by ln density and ln viscosity, and the variance of the angle.
+///
+/// An input shifts ln density by d, ln viscosity by v and ln surface tension by s at once (temperature does); ln(safety factor) has slope −1 in the last, so
+/// its effect is a·d + b·v − s with slopes a and b, and the squares of all effects add up to a²Σd² + 2abΣdv + b²Σv² − 2aΣds − 2bΣvs + Σs².
+#[derive(Debug, Clone, Copy, Default, PartialEq)]
 pub struct Doubt {
     density: f64,
+    density_and_viscosity: f64,
     viscosity: f64,
-    surface_tension: f64,
+    density_and_tension: f64,
+    viscosity_and_tension: f64,
+    tension: f64,
     contact_angle: f64,
-    /// Shifts of ln density, ln viscosity and ln surface tension together.
-    liquid: ArrayVec<[f64; 3], MOST_LIQUID>,
 }
 
 impl Doubt {
     /// Adds one standard uncertainty, if it is of liquid or surface.
     pub fn add(&mut self, shift: &Shift) {
-        match *shift {
-            Shift::Liquid(shift) => {
-                // There are places for as many as a liquid has conditions.
-                let _ = self.liquid.try_push(shift);
+        let [d, v, s] = match *shift {
+            Shift::Liquid(shift) => shift,
+            Shift::One(Primary::Density, by) => [by, 0.0, 0.0],
+            Shift::One(Primary::Viscosity, by) => [0.0, by, 0.0],
+            Shift::One(Primary::SurfaceTension, by) => [0.0, 0.0, by],
+            Shift::One(Primary::ContactAngle, by) => {
+                self.contact_angle += by * by;
+                return;
             }
-            Shift::One(primary, by) => {
-                let square = by * by;
-                match primary {
-                    Primary::Density => self.density += square,
-                    Primary::Viscosity => self.viscosity += square,
-                    Primary::SurfaceTension => self.surface_tension += square,
-                    Primary::ContactAngle => self.contact_angle += square,
-                    Primary::Turn
-                    | Primary::EdgeRadius
-                    | Primary::Section
-                    | Primary::Slope
-                    | Primary::RunLength
-                    | Primary::Flow
-                    | Primary::Thickness
-                    | Primary::Equivalence => {}
-                }
-            }
-        }
+            Shift::One(..) => return,
+        };
+        self.density += d * d;
+        self.density_and_viscosity += d * v;
+        self.viscosity += v * v;
+        self.density_and_tension += d * s;
+        self.viscosity_and_tension += v * s;
+        self.tension += s * s;
     }
 
     /// Variance of ln(safety factor), the separation model's own left out: the sum of the squares of slope × standard uncertainty.
-    #[inline]
+    #[inline(always)]
     #[must_use]
     pub fn variance(&self, t: &Threshold, edge: EdgeDoubt, stream: &StreamDoubt) -> f64 {
         let by = by_film(t);
         let by_kinematic_viscosity = by.through(stream.kinematic_viscosity);
-        let by_density = 1.0 - t.by_ln_reynolds - by_kinematic_viscosity;
-        let by_viscosity = t.by_ln_reynolds + by_kinematic_viscosity;
-        let mut sum = by_density * by_density * self.density
-            + by_viscosity * by_viscosity * self.viscosity
-            + self.surface_tension
+        let a = 1.0 - t.by_ln_reynolds - by_kinematic_viscosity;
+        let b = t.by_ln_reynolds + by_kinematic_viscosity;
+        let squares = a * a * self.density + b * b * self.viscosity + self.tension;
+        let products = a * b * self.density_and_viscosity
+            - a * self.density_and_tension
+            - b * self.viscosity_and_tension;
+        squares
+            + 2.0 * products
             + t.by_contact_angle * t.by_contact_angle * self.contact_angle
             + t.by_turn * t.by_turn * edge.turn
             + t.by_ln_radius_ratio * t.by_ln_radius_ratio * edge.radius
-            + stream.variance(by);
-        for [density, viscosity, tension] in &self.liquid {
-            let effect = by_density * density + by_viscosity * viscosity - tension;
-            sum += effect * effect;
-        }
-        sum
+            + stream.variance(by)
     }
 }
 
@@ -112,6 +103,22 @@ impl StreamDoubt {
         Self { thickness: 0.0, speed: 0.0, both: 0.0, kinematic_viscosity: slopes.kinematic_viscosity }
     }
 
+    /// As numbers, for many streams side by side.
+    #[must_use]
+    pub const fn to_array(&self) -> [f64; 5] {
+        let Pair { thickness, speed } = self.kinematic_viscosity;
+        [self.thickness, self.speed, self.both, thickness, speed]
+    }
+
+    /// From the numbers of [`StreamDoubt::to_array`].
+    #[inline(always)]
+    #[must_use]
+    pub const fn from_array(numbers: [f64; 5]) -> Self {
+        let [thickness, speed, both, by_viscosity, speed_by_viscosity] = numbers;
+        let kinematic_viscosity = Pair { thickness: by_viscosity, speed: speed_by_viscosity };
+        Self { thickness, speed, both, kinematic_viscosity }
+    }
+
     /// Adds one standard uncertainty, if it is of the stream.
     pub fn add(&mut self, shift: &Shift, slopes: &StreamSlopes) {
         if let Shift::One(primary, by) = *shift {
@@ -123,6 +130,7 @@ impl StreamDoubt {
         }
     }
 
+    #[inline(always)]
     fn variance(&self, by: Pair) -> f64 {
         by.thickness * by.thickness * self.thickness
             + 2.0 * by.thickness * by.speed * self.both

@@ -5,6 +5,7 @@
 //! [`evaluation::evaluate`](fn@evaluation::evaluate) adds flows, remedies, shares and the last drop on top of it.
 
 pub mod balance;
+pub mod calibration;
 pub mod case;
 pub mod cautions;
 pub mod decision;

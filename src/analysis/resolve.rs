@@ -80,6 +80,7 @@ impl Spec {
             flow: self.flow_ml_s * quantity::FLOW.to_si,
             confidence: Confidence::at(self.confidence),
             coefficients: self.coefficients,
+            calibration: self.calibration,
             inputs,
         };
         Ok(Resolved { case, liquid, wetting_liquid, angles, assumed })

@@ -1,6 +1,6 @@
 //! A question in the caller's units, with catalogue entries already found.
 
-use super::field::Field;
+use super::{calibration::Calibration, field::Field};
 use crate::physics::{
     liquid::{Conditions, Entry},
     separation::closed_form::CoefficientSet,
@@ -35,6 +35,8 @@ pub struct Spec {
     pub uncertainty: Uncertainties,
     /// Coefficients of the closed form.
     pub coefficients: &'static CoefficientSet,
+    /// What bench pours have taught of them, if anything.
+    pub calibration: Option<Calibration>,
 }
 
 /// Cross-section of the lip.

@@ -2,6 +2,7 @@
 
 use super::{
     balance::{prepare, weigh},
+    calibration::{Calibration, Place},
     decision::Decision,
     field::Field,
     notice::Notice,
@@ -22,18 +23,70 @@ pub fn warnings(spec: &Spec, resolved: &Resolved, decision: &Decision) -> Vec<No
     stream_warnings(spec, resolved, decision, &mut found);
     liquid_warnings(spec, resolved, &mut found);
     surface_warnings(spec, resolved, &mut found);
-    if resolved.case.coefficients.id == SET_1.id {
+    let case = &resolved.case;
+    let own_offset = case.calibration.is_some_and(|c| c.knows_offset(case.coefficients));
+    if case.coefficients.id == SET_1.id && !own_offset {
         found.push(Notice::at(
             "coefficients_under_review",
             "/coefficients",
             "Flow computations under way, with streams held at rest near the threshold, put the critical Weber number above set-1 by something like 0.2 to 0.4 in ln: count a safety factor below about 1.5 as no margin.",
         ));
     }
+    if let Some(calibration) = &case.calibration {
+        calibration_warnings(calibration, resolved, decision, &mut found);
+        return found;
+    }
     found.push(Notice::new(
         "not_compared_with_experiment",
         "Neither the stream at millimetre depth nor the critical Weber number has been compared with a measured lip; the doubt stated includes that by judgement.",
     ));
     found
+}
+
+fn calibration_warnings(
+    calibration: &Calibration,
+    resolved: &Resolved,
+    decision: &Decision,
+    found: &mut Vec<Notice>,
+) {
+    let case = &resolved.case;
+    let place = Place::of(&decision.balance.numbers, case.contact_angle, case.lip.edge.turn);
+    let names = [
+        "edge radius over film thickness",
+        "contact angle",
+        "turn of the edge",
+        "Reynolds number",
+        "Froude number",
+    ];
+    let beyond: Vec<&str> = names
+        .into_iter()
+        .zip(calibration.beyond(&place))
+        .filter(|(_, beyond)| *beyond)
+        .map(|(n, _)| n)
+        .collect();
+    if !beyond.is_empty() {
+        found.push(Notice::at(
+            "beyond_calibration",
+            "/calibration",
+            format!(
+                "Outside what the bench rows of the calibration covered: {}; doubt widened the further out it lies.",
+                beyond.join(", ")
+            ),
+        ));
+    }
+    let threshold = &decision.balance.threshold;
+    if threshold.by_ln_radius_ratio < 0.0 || threshold.by_contact_angle > 0.0 {
+        found.push(Notice::at(
+            "trend_reversed",
+            "/calibration",
+            "As calibrated, a sharper edge or a less wettable lip makes it worse here, against the closed form and all experience; look at the rows behind the calibration.",
+        ));
+    }
+    found.push(Notice::at(
+        "calibrated_by_caller",
+        "/calibration",
+        "The critical Weber number follows the calibration sent with the request; what its bench rows did not show has not been compared with a measured lip.",
+    ));
 }
 
 fn model_warnings(decision: &Decision, found: &mut Vec<Notice>) {

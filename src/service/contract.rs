@@ -16,7 +16,8 @@ use super::problem::{PROBLEM_JSON, ProblemDocument, ProblemKind};
     ),
     tags(
         (name = "lip", description = "Does a lip dribble?"),
-        (name = "production", description = "Spread, bench and lot: what production makes of a lip"),
+        (name = "bench", description = "What bench pours and measured parts say"),
+        (name = "production", description = "Spread and lot: what production makes of a lip"),
         (name = "maps", description = "Where does clean end?"),
         (name = "catalogue", description = "Liquids, materials, and how they wet each other"),
         (name = "operation", description = "For those who run the service")

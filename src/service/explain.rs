@@ -126,28 +126,82 @@ fn faults_elsewhere<T: Request>(document: &Value, known: &[Fault]) -> Vec<Fault>
     else {
         return Vec::new();
     };
-    let broken = |name: &str| {
-        let at = format!("/{}", escaped(name));
-        known.iter().any(|fault| fault.pointer == at || fault.pointer.starts_with(&format!("{at}/")))
-    };
-    filled.retain(|name, _| given.contains_key(name) || broken(name));
+    let broken = Broken(known);
+    filled.retain(|name, _| given.contains_key(name) || broken.within(&format!("/{}", escaped(name))));
     for (name, value) in given {
-        if !broken(name) {
+        let at = format!("/{}", escaped(name));
+        if !broken.within(&at) {
             filled.insert(name.clone(), value.clone());
+        } else if let (Value::Array(items), Some(Value::Array(sound))) = (value, filled.get(name))
+            && !broken.exactly(&at)
+            && let Some(sound) = sound.first()
+        {
+            let mended =
+                items.iter().enumerate().map(|(i, item)| broken.mended(&format!("{at}/{i}"), item, sound));
+            filled.insert(name.clone(), Value::Array(mended.collect()));
         }
     }
     let Ok(request) = serde_json::from_value::<T>(Value::Object(filled)) else { return Vec::new() };
     let mut found = request.faults();
     // A verdict on two parts together means nothing when one of them is a stand-in.
     found.retain(|fault| {
-        let mut parts = fault.pointer.split('/').skip(1);
-        let part = parts.next().unwrap_or_default();
-        // A member that is itself a pointer speaks of the part that it points into.
-        let of = parts.next().and_then(|name| name.strip_prefix("~1")?.split("~1").next());
-        let stands = !T::rests_on(fault.code).iter().any(|part| broken(part));
-        stands && !broken(part) && !of.is_some_and(&broken) && fault.code != "not_applicable"
+        let stands = !T::rests_on(fault.code).iter().any(|part| broken.within(&format!("/{part}")));
+        stands && !broken.speaks_of(&fault.pointer) && fault.code != "not_applicable"
     });
     found
+}
+
+/// The parts of a document that have faults of form. A part is a member of the document, or of an item of a list that is one.
+struct Broken<'a>(&'a [Fault]);
+
+impl Broken<'_> {
+    fn exactly(&self, at: &str) -> bool {
+        self.0.iter().any(|fault| fault.pointer == at)
+    }
+
+    /// Whether there is a fault at this place or in it.
+    fn within(&self, at: &str) -> bool {
+        let inside = |pointer: &str| {
+            pointer.strip_prefix(at).is_some_and(|rest| rest.is_empty() || rest.starts_with('/'))
+        };
+        self.0.iter().any(|fault| inside(&fault.pointer))
+    }
+
+    /// An item of a list with its broken members, or all of it, replaced by those of a sound one.
+    fn mended(&self, at: &str, item: &Value, sound: &Value) -> Value {
+        if !self.within(at) {
+            return item.clone();
+        }
+        let (Value::Object(given), Value::Object(sound)) = (item, sound) else { return sound.clone() };
+        let member = |name: &str| format!("{at}/{}", escaped(name));
+        let mut mended = sound.clone();
+        mended.retain(|name, _| given.contains_key(name) || self.within(&member(name)));
+        for (name, value) in given {
+            if !self.within(&member(name)) {
+                mended.insert(name.clone(), value.clone());
+            }
+        }
+        Value::Object(mended)
+    }
+
+    /// Whether a fault found elsewhere speaks of a broken part, and so of its stand-in.
+    fn speaks_of(&self, pointer: &str) -> bool {
+        let mut parts = pointer.split('/').skip(1);
+        let name = parts.next().unwrap_or_default();
+        let at = format!("/{name}");
+        let Some(second) = parts.next() else { return self.within(&at) };
+        // A member that is itself a pointer speaks of the part that it points into.
+        let of = second.strip_prefix("~1").and_then(|rest| rest.split("~1").next());
+        if of.is_some_and(|name| self.within(&format!("/{name}"))) {
+            return true;
+        }
+        if second.parse::<usize>().is_err() {
+            return self.within(&at);
+        }
+        let item = format!("{at}/{second}");
+        let part = parts.next().map_or_else(|| item.clone(), |member| format!("{item}/{member}"));
+        self.exactly(&at) || self.exactly(&item) || self.within(&part)
+    }
 }
 
 /// A member's name as a part of a JSON Pointer.

@@ -29,9 +29,7 @@ impl ModelAnswer {
     /// The model that answered `request`, a request with its defaults filled in and its members in canonical order.
     #[must_use]
     pub fn of<T: Serialize>(request: &T, coefficients: &'static str) -> Self {
-        let mut bytes = Vec::with_capacity(1024);
-        // Writing into memory cannot fail, and a request is made of strings, lists and finite numbers.
-        let _ = request.serialize(&mut serde_json::Serializer::with_formatter(&mut bytes, Canonical));
+        let mut bytes = canonical_bytes(request);
         let mut hash = Sha256::new();
         bytes.push(0);
         bytes.extend_from_slice(VERSION.as_bytes());
@@ -47,6 +45,18 @@ impl ModelAnswer {
         let Self { version, coefficients, fingerprint } = self;
         format!("version=\"{version}\", coefficients=\"{coefficients}\", fingerprint=\"{fingerprint}\"")
     }
+}
+
+/// SHA-256 over the canonical form (RFC 8785) of `value`, whose members stand in canonical order.
+pub(super) fn digest_of<T: Serialize>(value: &T) -> String {
+    hexadecimal(&Sha256::digest(canonical_bytes(value)))
+}
+
+fn canonical_bytes<T: Serialize>(value: &T) -> Vec<u8> {
+    let mut bytes = Vec::with_capacity(1024);
+    // Writing into memory cannot fail, and a request is made of strings, lists and finite numbers.
+    let _ = value.serialize(&mut serde_json::Serializer::with_formatter(&mut bytes, Canonical));
+    bytes
 }
 
 /// SHA-256 over everything the catalogue says of liquids and surfaces.
@@ -70,7 +80,7 @@ pub fn catalogue_digest() -> &'static str {
     })
 }
 
-fn hexadecimal(bytes: &[u8]) -> String {
+pub(super) fn hexadecimal(bytes: &[u8]) -> String {
     const DIGITS: [char; 16] =
         ['0', '1', '2', '3', '4', '5', '6', '7', '8', '9', 'a', 'b', 'c', 'd', 'e', 'f'];
     let digit = |nibble: u8| DIGITS[usize::from(nibble & 15)];
@@ -89,9 +99,7 @@ impl Formatter for Canonical {
 /// The canonical form (RFC 8785) of what serde writes in canonical order.
 #[cfg(test)]
 fn canonical<T: Serialize>(value: &T) -> String {
-    let mut bytes = Vec::new();
-    value.serialize(&mut serde_json::Serializer::with_formatter(&mut bytes, Canonical)).unwrap();
-    String::from_utf8(bytes).unwrap()
+    String::from_utf8(canonical_bytes(value)).unwrap()
 }
 
 #[cfg(test)]
@@ -106,6 +114,20 @@ mod tests {
         let theirs = serde_json_canonicalizer::to_string(&serde_json::to_value(&request).unwrap()).unwrap();
         assert_eq!(ours, theirs);
         assert!(ours.starts_with(r#"{"coefficients":"set-1","confidence":0.95,"include":["#), "{ours}");
+    }
+
+    #[test]
+    fn calibration_requests_and_calibrations_serialise_in_canonical_form() {
+        use crate::service::api::calibrations::{CalibrationsRequest, calibrate_json};
+        let request: CalibrationsRequest = serde_json::from_str(CalibrationsRequest::sound()).unwrap();
+        let answer = calibrate_json(CalibrationsRequest::sound().as_bytes()).unwrap();
+        let answer: serde_json::Value = serde_json::from_slice(&answer).unwrap();
+        let mut evaluation: serde_json::Value = serde_json::from_str(EvaluationRequest::sound()).unwrap();
+        evaluation["calibration"] = answer["calibration"].clone();
+        let evaluation: EvaluationRequest = serde_json::from_value(evaluation).unwrap();
+        let theirs = |value| serde_json_canonicalizer::to_string(&value).unwrap();
+        assert_eq!(canonical(&request), theirs(serde_json::to_value(&request).unwrap()));
+        assert_eq!(canonical(&evaluation), theirs(serde_json::to_value(&evaluation).unwrap()));
     }
 
     #[test]

@@ -10,8 +10,8 @@ use utoipa_axum::router::OpenApiRouter;
 use utoipa_axum::routes;
 
 use super::api::{
-    batch, contact_angles, designs, docs, evaluations, health, liquids, lots, metrics, pours, problems,
-    surfaces, sweeps, tolerances, version,
+    batch, calibrations, contact_angles, designs, docs, evaluations, health, liquids, lots, metrics, pours,
+    problems, surfaces, sweeps, tolerances, version,
 };
 use super::contract;
 use super::layers::House;
@@ -25,6 +25,7 @@ fn resources() -> OpenApiRouter<Shared> {
         .routes(routes!(batch::evaluate_batch))
         .routes(routes!(sweeps::sweep))
         .routes(routes!(designs::design))
+        .routes(routes!(calibrations::calibrate))
         .routes(routes!(tolerances::tolerances))
         .routes(routes!(lots::lots))
         .routes(routes!(contact_angles::contact_angles))

@@ -4,6 +4,7 @@
 mod ask;
 mod batch;
 mod bearer;
+mod calibrations;
 mod command_line;
 mod contact_angles;
 mod contract;

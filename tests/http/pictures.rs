@@ -165,3 +165,38 @@ async fn bad_requests_are_problems_in_json_and_carry_no_markup_into_a_picture() 
         answer.problem();
     }
 }
+
+#[tokio::test]
+async fn a_sweep_is_drawn_as_curves_or_as_a_map() {
+    let service = service(&state(|_| {}));
+    let accept = [("content-type", "application/json"), ("accept", "image/svg+xml")];
+    let radius = serde_json::json!({"pointer": "/lip/edge/rounded/radius_mm", "from": 0.1, "to": 3, "count": 30, "spacing": "log"});
+    let flow = serde_json::json!({"pointer": "/pour/flow_ml_s", "from": 5, "to": 100, "count": 24, "spacing": "log"});
+    let angle = serde_json::json!({"pointer": "/surface/measured/advancing_deg", "values": [70, 90]});
+    for axes in
+        [serde_json::json!([flow]), serde_json::json!([radius, flow]), serde_json::json!([flow, angle])]
+    {
+        let request = serde_json::json!({"base": crate::evaluations::request(), "axes": axes}).to_string();
+        let answer = call(&service, "POST", "/v1/sweeps", &accept, request.clone().into()).await;
+        assert_eq!(answer.status, http::StatusCode::OK, "{:?}", answer.body);
+        assert_eq!(answer.header("content-type"), "image/svg+xml");
+        let text = std::str::from_utf8(&answer.body).unwrap();
+        let document = roxmltree::Document::parse(text).unwrap();
+        for needed in ["title", "desc"] {
+            assert!(
+                document.descendants().any(|node| node.has_tag_name(("http://www.w3.org/2000/svg", needed))),
+                "{needed}"
+            );
+        }
+        let again = call(&service, "POST", "/v1/sweeps", &accept, request.into()).await;
+        assert_eq!(again.body, answer.body, "same request, same bytes");
+    }
+    let third = serde_json::json!({"pointer": "/lip/edge/rounded/turn_deg", "values": [90, 120]});
+    let request = serde_json::json!({"base": crate::evaluations::request(), "axes": [radius, flow, third], "part": {"index": 0, "of": 2}});
+    let refused = call(&service, "POST", "/v1/sweeps", &accept, request.to_string().into()).await;
+    let problem = refused.problem();
+    assert_eq!(problem["status"], 422);
+    let pointers: Vec<&str> =
+        problem["errors"].as_array().unwrap().iter().map(|e| e["pointer"].as_str().unwrap()).collect();
+    assert_eq!(pointers, ["/part", "/axes"]);
+}

@@ -1,11 +1,15 @@
 //! `POST /v1/pours` as its callers meet it.
 
-use crate::ask::{call, post_json, service, state};
+use std::io::Cursor;
+
+use crate::ask::{Answer, call, post_json, service, state};
+use arrow_array::{Array, Float64Array, StringArray};
 use axum::body::Body;
 use http::StatusCode;
 use serde_json::{Value, json};
 
 const PATH: &str = "/v1/pours";
+const ARROW: &str = "application/vnd.apache.arrow.stream";
 
 /// A 1.2 L jug of cold milk.
 fn jug() -> Value {
@@ -20,6 +24,11 @@ async fn ask(request: &Value) -> Value {
     let answer = post_json(&service(&state(|_| {})), PATH, request.to_string()).await;
     assert_eq!(answer.status, StatusCode::OK, "{:?}", answer.body);
     answer.json()
+}
+
+async fn called(request: &Value, accept: &str) -> Answer {
+    let headers = [("content-type", "application/json"), ("accept", accept)];
+    call(&service(&state(|_| {})), "POST", PATH, &headers, Body::from(request.to_string())).await
 }
 
 /// The faults of a refused request, as pointer and code.
@@ -84,15 +93,9 @@ async fn the_series_has_one_row_per_instant_in_both_forms() {
         assert!(series["landing_mm"][i].is_null() || stream == "free");
         assert_eq!(factor.is_null(), series["verdict"][i].is_null());
     }
-    let csv = call(
-        &service(&state(|_| {})),
-        "POST",
-        PATH,
-        &[("content-type", "application/json"), ("accept", "text/csv")],
-        Body::from(request.to_string()),
-    )
-    .await;
-    assert_eq!((csv.status, csv.header("content-type")), (StatusCode::OK, "text/csv"));
+    let csv = called(&request, "text/csv").await;
+    let kind = "text/csv; charset=utf-8; header=present";
+    assert_eq!((csv.status, csv.header("content-type")), (StatusCode::OK, kind));
     let text = String::from_utf8(csv.body.to_vec()).unwrap();
     let lines: Vec<&str> = text.split_terminator("\r\n").collect();
     assert_eq!(lines.len(), rows + 1);
@@ -108,9 +111,71 @@ async fn the_series_has_one_row_per_instant_in_both_forms() {
             }
         }
     }
+    let arrow = called(&request, ARROW).await;
+    assert_eq!((arrow.status, arrow.header("content-type")), (StatusCode::OK, ARROW));
+    let reader = arrow_ipc::reader::StreamReader::try_new(Cursor::new(arrow.body.to_vec()), None).unwrap();
+    let schema = reader.schema();
+    assert_eq!(schema.metadata()["fingerprint"], answer["model"]["fingerprint"].as_str().unwrap());
+    assert!(arrow.header("result-model").contains(answer["model"]["fingerprint"].as_str().unwrap()));
+    let found: Vec<&str> = schema.fields().iter().map(|field| field.name().as_str()).collect();
+    assert_eq!(found, names);
+    let mut row = 0;
+    for batch in reader {
+        let batch = batch.unwrap();
+        for at in 0..batch.num_rows() {
+            for (name, column) in names.iter().zip(batch.columns()) {
+                let expected = &series[*name][row];
+                if let Some(words) = column.as_any().downcast_ref::<StringArray>() {
+                    let word = words.is_valid(at).then(|| words.value(at));
+                    assert_eq!(word, expected.as_str(), "{name}");
+                } else {
+                    let numbers = column.as_any().downcast_ref::<Float64Array>().unwrap();
+                    let value = numbers.is_valid(at).then(|| numbers.value(at));
+                    assert_eq!(value, expected.as_f64(), "{name}");
+                }
+            }
+            row += 1;
+        }
+    }
+    assert_eq!(row, rows);
     let neither =
         call(&service(&state(|_| {})), "POST", PATH, &[("accept", "image/png")], Body::from("{}")).await;
     assert_eq!(neither.status, StatusCode::NOT_ACCEPTABLE);
+}
+
+#[tokio::test]
+async fn the_picture_says_what_the_answer_says() {
+    let mut idle = jug();
+    idle["fill_ml"] = json!(100);
+    idle["tilt"]["steady"]["hold_deg"] = json!(1);
+    idle["target_ml"] = json!(50);
+    for (request, moments) in [(jug(), 4), (idle, 2)] {
+        let answer = ask(&request).await;
+        let drawn = called(&request, "image/svg+xml").await;
+        assert_eq!((drawn.status, drawn.header("content-type")), (StatusCode::OK, "image/svg+xml"));
+        let svg = String::from_utf8(drawn.body.to_vec()).unwrap();
+        let document = roxmltree::Document::parse(&svg).unwrap();
+        let text = |name: &str| {
+            let found = document.root_element().children().find(|n| n.tag_name().name() == name);
+            found.and_then(|n| n.text()).unwrap().to_owned()
+        };
+        let (title, says) = (text("title"), text("desc"));
+        assert!(says.contains(&format!("vessel at {moments} moments")), "{says}");
+        let spans = answer["dribbling_spans"].as_array().unwrap().len();
+        assert_eq!(
+            says.matches("runs down the outside (best estimate) from").count(),
+            spans.min(20),
+            "{says}"
+        );
+        assert!(svg.contains(answer["model"]["fingerprint"].as_str().unwrap()));
+        if moments == 4 {
+            let served: f64 = title.split(' ').next().unwrap().parse().unwrap();
+            assert!((served / number(&answer["served_ml"]) - 1.0).abs() < 5e-3, "{title}");
+        } else {
+            assert_eq!(title, "Nothing leaves the vessel");
+            assert!(answer["starts_s"].is_null());
+        }
+    }
 }
 
 #[tokio::test]

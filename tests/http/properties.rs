@@ -158,6 +158,12 @@ proptest! {
     }
 
     #[test]
+    fn any_sound_request_with_a_calibration_is_answered_with_finite_numbers(mut request in any_request()) {
+        request["calibration"] = crate::calibrations::example_calibration().clone();
+        answered(&request.to_string())?;
+    }
+
+    #[test]
     fn any_careless_request_is_answered_or_explained(mut request in any_request(), changes in proptest::collection::vec((any::<prop::sample::Index>(), any_value(), "\\PC{0,8}"), 1..4)) {
         for (place, value, name) in changes {
             let mut found = Vec::new();

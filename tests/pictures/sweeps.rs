@@ -1,8 +1,16 @@
 //! Tables of sweeps.
 
+use std::sync::atomic::AtomicBool;
+
 use dribble_risk::{
-    analysis::decision::Verdict,
-    service::render::{Asked, Axis, Drawn, Heading, Scale, SweepAxis, SweepTable, sweep},
+    analysis::{decision::Verdict, field::Field, sweep},
+    service::{
+        api::evaluations::{EXAMPLE, EvaluationRequest},
+        render::{
+            Asked, Axis, Drawn, Heading, NotDrawable, Scale, SweepAxis, SweepTable, drawable, sweep,
+            sweep_picture,
+        },
+    },
 };
 
 use crate::Picture;
@@ -56,7 +64,32 @@ fn draw(flows: &[f64], angles: &[f64], quantity: Drawn, with_weber: bool) -> Str
     .unwrap()
 }
 
+/// A sweep of the example over fields of it.
+fn computed(axes: Vec<sweep::Axis>, quantity: Drawn) -> String {
+    let request: EvaluationRequest = serde_json::from_str(EXAMPLE).unwrap();
+    let (spec, _) = request.question().unwrap();
+    let never = AtomicBool::new(false);
+    let swept = sweep::Sweep::new(spec, axes, &never).unwrap();
+    let heading = Heading { title: "", subtitle: "The example", note: "set-1" };
+    sweep_picture(&swept.picture_table(&never).unwrap(), quantity, heading).unwrap()
+}
+
+fn log(field: Field, from: f64, to: f64, count: usize) -> sweep::Axis {
+    sweep::Axis::new(field, sweep::Values::Logarithmic { from, to, count })
+}
+
+#[test]
+fn a_sweep_is_refused_before_it_is_computed() {
+    assert_eq!(drawable(2, 40_000), Ok(()));
+    assert_eq!(drawable(2, 40_001), Err(NotDrawable::Points(40_001)));
+    assert_eq!(drawable(3, 10), Err(NotDrawable::Axes(3)));
+}
+
 pub fn all() -> Vec<Picture> {
+    let slopes = sweep::Axis::new(Field::Slope, sweep::Values::Linear { from: -20.0, to: 60.0, count: 41 });
+    let negative = log(Field::Slope, -1.0, -25.0, 30);
+    let cold =
+        sweep::Axis::new(Field::Temperature, sweep::Values::Linear { from: -20.0, to: 90.0, count: 45 });
     let flows: Vec<f64> = (0..40).map(|i| 3.0 * 1.12_f64.powi(i)).collect();
     let angles: Vec<f64> = (0..30).map(|i| 10.0 + 5.0 * f64::from(i)).collect();
     // Values out of order are put in order.
@@ -67,6 +100,23 @@ pub fn all() -> Vec<Picture> {
         ("sweep-family", draw(&flows, &[105.0, 30.0, 70.0], Drawn::SafetyFactor, false)),
         ("sweep-map", draw(&mixed, &angles, Drawn::SafetyFactor, false)),
         ("sweep-map-probability", draw(&flows, &angles, Drawn::DribbleProbability, true)),
+        ("sweep-computed-curve", computed(vec![log(Field::Flow, 1.0, 200.0, 80)], Drawn::SafetyFactor)),
+        ("sweep-computed-negative", computed(vec![negative], Drawn::SafetyFactor)),
+        (
+            "sweep-computed-map",
+            computed(
+                vec![log(Field::Flow, 1.0, 200.0, 60), log(Field::EdgeRadius, 0.1, 5.0, 50)],
+                Drawn::SafetyFactor,
+            ),
+        ),
+        (
+            "sweep-computed-slopes",
+            computed(vec![log(Field::Flow, 1.0, 200.0, 60), slopes], Drawn::DribbleProbability),
+        ),
+        (
+            "sweep-computed-freezing",
+            computed(vec![cold, log(Field::Flow, 1.0, 200.0, 40)], Drawn::SafetyFactor),
+        ),
     ]
     .map(|(name, svg)| (name.to_owned(), svg))
     .to_vec()

@@ -35,6 +35,7 @@ fn water(flow_ml_s: f64, advancing: f64) -> Spec {
         confidence: 0.95,
         uncertainty: Uncertainties::default(),
         coefficients: DEFAULT_SET,
+        calibration: None,
     }
 }
 

@@ -5,6 +5,7 @@ use std::sync::atomic::AtomicBool;
 
 use dribble_risk::{
     analysis::{
+        calibration::{Calibration, Moments, Symmetric},
         decision::decide,
         evaluation::{Include, evaluate},
         fault::Fault,
@@ -89,8 +90,11 @@ fn finish() -> impl Strategy<Value = SurfaceSpec> {
 
 fn question() -> impl Strategy<Value = Spec> {
     let lip = (section(), 0.0..4.0, 20.0..180.0, -30.0..85.0, 0.0..80.0);
-    let rest = (finish(), liquid(), -1.0..3.5, any::<bool>(), 0.5..0.9999, proptest::option::of(0.001..0.5));
-    (lip, rest).prop_map(|(lip, (surface, liquid, log_flow, wet, confidence, uncertainty))| {
+    let rest = (
+        (finish(), liquid(), -1.0..3.5, any::<bool>(), 0.5..0.9999, proptest::option::of(0.001..0.5)),
+        any::<bool>(),
+    );
+    (lip, rest).prop_map(|(lip, ((surface, liquid, log_flow, wet, confidence, uncertainty), calibrated))| {
         let (section, radius_mm, turn_deg, slope_deg, length_mm) = lip;
         let mut known = Uncertainties::default();
         if let Some(u) = uncertainty {
@@ -109,8 +113,22 @@ fn question() -> impl Strategy<Value = Spec> {
             confidence,
             uncertainty: known,
             coefficients: DEFAULT_SET,
+            calibration: calibrated.then(calibration),
         }
     })
+}
+
+/// A calibration whose rows covered some of the questions and not others.
+fn calibration() -> Calibration {
+    let moments = Moments {
+        mean: [0.25, -0.1, 0.15],
+        covariance: Symmetric([0.01, 0.002, -0.001, 0.02, 0.003, 0.03]),
+        scatter_variance: 0.02,
+        ln_scatter: -2.0,
+        ln_scatter_sd: 0.2,
+    };
+    let covered = [[-1.5, 0.5], [-0.5, 0.6], [-0.2, 0.5], [4.0, 7.0], [0.0, 1.5]];
+    Calibration::new(&moments, [-0.4, 0.1], covered)
 }
 
 /// Axes over distinct fields that the question has, near its own values and far from them.
@@ -190,7 +208,7 @@ proptest! {
             }
             match single(&at) {
                 Ok((expected, verdict)) => {
-                    prop_assert_eq!(block.faults[row], None);
+                    prop_assert_eq!(block.faults.at(row), None);
                     prop_assert_eq!(verdicts[row], Some(verdict));
                     for (i, expected) in expected.into_iter().enumerate() {
                         let found = numbers(&block, i)[row];
@@ -198,7 +216,7 @@ proptest! {
                     }
                 }
                 Err(faults) => {
-                    prop_assert!(block.faults[row].is_some_and(|code| faults.iter().any(|f| f.code == code)));
+                    prop_assert!(block.faults.at(row).is_some_and(|code| faults.iter().any(|f| f.code == code)));
                     prop_assert!(numbers(&block, 0)[row].is_nan() && verdicts[row].is_none());
                 }
             }
@@ -235,6 +253,7 @@ fn outputs_are_those_of_an_evaluation() {
         confidence: 0.95,
         uncertainty: Uncertainties::default(),
         coefficients: DEFAULT_SET,
+        calibration: None,
     };
     let axes = vec![
         Axis::new(Field::EdgeRadius, Values::Linear { from: 0.0, to: 2.0, count: 5 }),
@@ -346,5 +365,6 @@ fn plain() -> Spec {
         confidence: 0.95,
         uncertainty: Uncertainties::default(),
         coefficients: DEFAULT_SET,
+        calibration: None,
     }
 }

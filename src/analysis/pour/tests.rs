@@ -42,6 +42,7 @@ fn jug() -> PourSpec {
             confidence: 0.95,
             uncertainty: Uncertainties::default(),
             coefficients: DEFAULT_SET,
+            calibration: None,
         },
         vessel: VesselSpec::Revolved {
             profile_mm: vec![

@@ -1,6 +1,15 @@
 //! Results of neighbouring points, column by column.
 
-use super::{axis::MOST_AXES, output::Output, point::Point};
+use super::{
+    axis::MOST_AXES,
+    lanes::{Judged, Lane},
+    output::Output,
+    point::Point,
+};
+use crate::{
+    analysis::{case::Confidence, decision::verdict},
+    physics::separation::numbers::FREE_SHEET_WEBER,
+};
 
 /// One output of neighbouring points.
 #[derive(Debug, Clone, PartialEq)]
@@ -23,6 +32,57 @@ impl Column {
     }
 }
 
+/// The codes of the first faults of neighbouring points.
+#[derive(Debug, Clone, Default, PartialEq)]
+pub struct Faults {
+    rows: usize,
+    /// Empty until there is one.
+    codes: Vec<Option<&'static str>>,
+}
+
+impl Faults {
+    /// How many points.
+    #[must_use]
+    pub const fn rows(&self) -> usize {
+        self.rows
+    }
+
+    /// The codes, one for each point; none of them if no point is impossible.
+    #[must_use]
+    pub fn codes(&self) -> Option<&[Option<&'static str>]> {
+        (!self.codes.is_empty()).then_some(&self.codes)
+    }
+
+    /// Why this point is impossible, if it is.
+    #[must_use]
+    pub fn at(&self, row: usize) -> Option<&'static str> {
+        self.codes.get(row).copied().flatten()
+    }
+
+    fn none(&mut self, rows: usize) {
+        self.rows += rows;
+        if !self.codes.is_empty() {
+            self.codes.resize(self.rows, None);
+        }
+    }
+
+    fn push(&mut self, code: &'static str) {
+        self.codes.resize(self.rows, None);
+        self.codes.push(Some(code));
+        self.rows += 1;
+    }
+
+    fn append(&mut self, other: Self) {
+        if other.codes.is_empty() {
+            self.none(other.rows);
+        } else {
+            self.codes.resize(self.rows, None);
+            self.codes.extend(other.codes);
+            self.rows += other.rows;
+        }
+    }
+}
+
 /// Results of neighbouring points, in the order of the rows.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Block {
@@ -30,8 +90,8 @@ pub struct Block {
     pub axes: Vec<Vec<f64>>,
     /// The outputs asked for, in their order.
     pub columns: Vec<Column>,
-    /// Why a point is impossible: the code of its first fault.
-    pub faults: Vec<Option<&'static str>>,
+    /// Why a point is impossible.
+    pub faults: Faults,
 }
 
 impl Block {
@@ -39,20 +99,20 @@ impl Block {
         Self {
             axes: (0..axes.min(MOST_AXES)).map(|_| Vec::with_capacity(capacity)).collect(),
             columns: outputs.iter().map(|output| Column::of(*output, capacity)).collect(),
-            faults: Vec::with_capacity(capacity),
+            faults: Faults::default(),
         }
     }
 
     /// How many points.
     #[must_use]
-    pub fn len(&self) -> usize {
-        self.faults.len()
+    pub const fn len(&self) -> usize {
+        self.faults.rows()
     }
 
     /// Whether there are none.
     #[must_use]
-    pub fn is_empty(&self) -> bool {
-        self.faults.is_empty()
+    pub const fn is_empty(&self) -> bool {
+        self.faults.rows() == 0
     }
 
     /// Adds the outputs of a point.
@@ -64,7 +124,29 @@ impl Block {
                 Column::Words(words) => words.push(output.word(point)),
             }
         }
-        self.faults.push(None);
+        self.faults.none(1);
+    }
+
+    /// Adds `run` points that were judged side by side.
+    pub(super) fn push_lanes(
+        &mut self,
+        outputs: &[Output],
+        (weber, judged): (&Lane, &Judged),
+        confidence: Confidence,
+        run: usize,
+    ) {
+        for (column, output) in self.columns.iter_mut().zip(outputs) {
+            match column {
+                Column::Numbers(numbers) => output.lane(weber, judged, confidence.two_sided, numbers, run),
+                Column::Words(words) => {
+                    let probabilities = judged.dribble_probability.iter().zip(weber).take(run);
+                    words.extend(probabilities.map(|(p, weber)| {
+                        Some(verdict(*p, confidence.level, *weber >= FREE_SHEET_WEBER).as_str())
+                    }));
+                }
+            }
+        }
+        self.faults.none(run);
     }
 
     /// Adds a point that is impossible.
@@ -75,7 +157,7 @@ impl Block {
                 Column::Words(words) => words.push(None),
             }
         }
-        self.faults.push(Some(code));
+        self.faults.push(code);
     }
 
     /// Adds the points of another block with the same columns.
@@ -90,6 +172,6 @@ impl Block {
                 _ => {}
             }
         }
-        self.faults.extend(other.faults);
+        self.faults.append(other.faults);
     }
 }

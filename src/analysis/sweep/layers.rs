@@ -9,6 +9,7 @@ use rayon::prelude::*;
 use super::{
     Cancelled,
     axis::{Axis, MOST_AXES},
+    lanes::{Columns, Given, Numbers, columns, fill},
 };
 use crate::analysis::{
     balance::{Approach, StreamSlopes},
@@ -43,7 +44,7 @@ pub(super) struct Conditioned {
 
 /// The stream of a point.
 #[derive(Debug, Clone)]
-pub(super) struct Approaching {
+pub(super) struct Streaming {
     pub(super) approach: Approach,
     pub(super) slopes: StreamSlopes,
     pub(super) doubt: StreamDoubt,
@@ -148,10 +149,20 @@ type Last<T> = Option<(usize, T)>;
 pub(super) struct Layers {
     liquid: Layer<Result<Liquid, Code>>,
     condition: Layer<Result<Conditioned, Code>>,
-    stream: Layer<Result<Approaching, Code>>,
+    stream: Layer<Result<Streaming, Code>>,
     edge: Layer<Result<Turned, Code>>,
     rim: Layer<Rounded>,
     wall: Layer<bool>,
+    /// The same as columns, where the last axis may run along them.
+    columns: LayerColumns,
+}
+
+/// Layers as columns of numbers.
+#[derive(Debug, Default)]
+struct LayerColumns {
+    stream: Columns<14>,
+    edge: Columns<7>,
+    rim: Columns<4>,
 }
 
 /// The last values of the layers that are not tabulated: one desk for each worker.
@@ -159,7 +170,7 @@ pub(super) struct Layers {
 pub(super) struct Desk {
     liquid: Last<Result<Liquid, Code>>,
     condition: Last<Result<Conditioned, Code>>,
-    stream: Last<Result<Approaching, Code>>,
+    stream: Last<Result<Streaming, Code>>,
     edge: Last<Result<Turned, Code>>,
     rim: Last<Rounded>,
     wall: Last<bool>,
@@ -191,6 +202,7 @@ impl Layers {
             edge: Layer::new(axes, |f| is_of_liquid(f) || is_of_surface(f) || f == Field::Turn),
             rim: Layer::new(axes, |f| f == Field::EdgeRadius),
             wall: Layer::new(axes, |f| f == Field::Turn || f == Field::Slope),
+            columns: LayerColumns::default(),
         };
         macro_rules! tabulate {
             ($($layer:ident),*) => {$(
@@ -210,6 +222,11 @@ impl Layers {
         }
         // Each stands on those before it.
         tabulate!(liquid, condition, stream, edge, rim, wall);
+        layers.columns = LayerColumns {
+            stream: columns(layers.stream.table.iter().map(|entry| entry.clone().ok())),
+            edge: columns(layers.edge.table.iter().map(|entry| entry.ok())),
+            rim: columns(layers.rim.table.iter().map(|entry| Some(*entry))),
+        };
         Ok(layers)
     }
 
@@ -228,7 +245,7 @@ impl Layers {
         Ok(Conditioned { liquid, contact_angle: condition.contact_angle, doubt })
     }
 
-    fn stream(&self, ground: &Ground, desk: &mut Desk, places: &Places) -> Result<Approaching, Code> {
+    fn stream(&self, ground: &Ground, desk: &mut Desk, places: &Places) -> Result<Streaming, Code> {
         let key = self.liquid.keys.key(places);
         let liquid = match self.liquid.known(&desk.liquid, key) {
             Some(liquid) => *liquid,
@@ -273,6 +290,57 @@ impl Layers {
             rim: self.rim.keys.key(places),
             wall: self.wall.keys.key(places),
         }
+    }
+
+    /// Makes the layers that stand still along the last axis and are not tabulated.
+    pub(super) fn make_still(
+        &self,
+        ground: &Ground,
+        desk: &mut Desk,
+        places: &Places,
+        (keys, steps): (&Keyring, &Keyring),
+    ) {
+        macro_rules! make {
+            ($($layer:ident),*) => {$(
+                if steps.$layer == 0 && self.$layer.known(&desk.$layer, keys.$layer).is_none() {
+                    let made = self.$layer(ground, desk, places);
+                    desk.$layer = Some((keys.$layer, made));
+                }
+            )*};
+        }
+        make!(condition, wall, stream, edge, rim);
+    }
+
+    /// What `run` neighbouring points along the last axis are judged by, side by side, and the liquid and surface that they share. None where they do not
+    /// share them, or where one of them is at fault or has to be computed by itself.
+    pub(super) fn fill<'a>(
+        &'a self,
+        given: &mut Given,
+        desk: &'a Desk,
+        (keys, steps): (&Keyring, &Keyring),
+        run: usize,
+    ) -> Option<&'a Conditioned> {
+        if steps.condition != 0 {
+            return None;
+        }
+        let condition = self.condition.known(&desk.condition, keys.condition)?.as_ref().ok()?;
+        let falls = if steps.wall == 0 {
+            *self.wall.known(&desk.wall, keys.wall)?
+        } else {
+            self.wall.table.get(keys.wall..keys.wall + run)?.iter().all(|falls| *falls)
+        };
+        if !falls {
+            return None;
+        }
+        let stream = self.stream.known(&desk.stream, keys.stream);
+        let edge = self.edge.known(&desk.edge, keys.edge);
+        let rim = self.rim.known(&desk.rim, keys.rim);
+        let stream = stream.and_then(|s| s.as_ref().ok()).map(Numbers::numbers);
+        let edge = edge.and_then(|e| e.as_ref().ok()).map(Numbers::numbers);
+        fill(&mut given.stream, &self.columns.stream, (keys.stream, steps.stream, run), stream)?;
+        fill(&mut given.edge, &self.columns.edge, (keys.edge, steps.edge, run), edge)?;
+        fill(&mut given.rim, &self.columns.rim, (keys.rim, steps.rim, run), rim.map(Numbers::numbers))?;
+        Some(condition)
     }
 
     /// Everything that a point is judged by, or the code of its first fault.
@@ -348,7 +416,7 @@ impl Keyring {
 /// Everything that a point is judged by.
 pub(super) struct Parts<'a> {
     pub(super) condition: &'a Conditioned,
-    pub(super) stream: &'a Approaching,
+    pub(super) stream: &'a Streaming,
     pub(super) edge: &'a Turned,
     pub(super) rim: &'a Rounded,
 }
@@ -365,7 +433,7 @@ fn edge_doubt(spec: &Spec) -> EdgeDoubt {
     doubt
 }
 
-fn approaching(spec: &Spec, liquid: &Liquid) -> Result<Approaching, Code> {
+fn approaching(spec: &Spec, liquid: &Liquid) -> Result<Streaming, Code> {
     const CODE: Code = "not_computable";
     let lip = spec.lip();
     let flow = spec.flow_ml_s * quantity::FLOW.to_si;
@@ -376,5 +444,5 @@ fn approaching(spec: &Spec, liquid: &Liquid) -> Result<Approaching, Code> {
         doubt.add(&input.shift, &slopes);
     }
     let approach = Approach::of(spec.coefficients, liquid, stream, stream.thickness);
-    Ok(Approaching { approach, slopes, doubt })
+    Ok(Streaming { approach, slopes, doubt })
 }

@@ -2,11 +2,12 @@
 //!
 //! This is the twin of [`decide`](super::decision::decide) for many cases at once. It computes nothing of its own: every layer of a decision comes
 //! from the same functions ([`Approach`](super::balance::Approach), [`StreamSlopes`](super::balance::StreamSlopes),
-//! [`judge`](super::decision::judge)), but once for each distinct combination of the fields that it depends on. A test holds both equal
+//! [`judge`]), but once for each distinct combination of the fields that it depends on. A test holds both equal
 //! point by point.
 
 mod axis;
 mod block;
+mod lanes;
 mod layers;
 mod output;
 mod picture;
@@ -21,11 +22,12 @@ use std::{
 use rayon::prelude::*;
 
 pub use axis::{Axis, MOST_AXES, Values};
-pub use block::{Block, Column};
+pub use block::{Block, Column, Faults};
 pub use output::Output;
 pub use picture::{PictureAxis, PicturePoint, PictureTable};
 
 use self::{
+    lanes::{Given, Judged, LANES, Step},
     layers::{Desk, Ground, Layers, Places},
     point::Point,
 };
@@ -35,12 +37,20 @@ use super::{case::Confidence, decision::judge, doubt::EdgeDoubt, spec::Spec};
 pub const CHUNK: usize = 1 << 14;
 
 /// Points between two looks at whether the work is still wanted.
-const LOOK_EVERY: usize = 64;
+const LOOK_EVERY: usize = LANES;
 
 /// The work was given up because nobody wants it any more.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, thiserror::Error)]
 #[error("the work was cancelled")]
 pub struct Cancelled;
+
+/// Points side by side, and the vector instructions that this machine has.
+#[derive(Default)]
+struct Lanes {
+    arch: pulp::Arch,
+    given: Given,
+    judged: Judged,
+}
 
 /// One question at many points. The first axis is the slowest.
 #[derive(Debug)]
@@ -91,6 +101,9 @@ impl Sweep {
         let fastest = axes.len().saturating_sub(1);
         let length = axes.last().map_or(1, Axis::len);
         let mut desk = Desk::default();
+        let side_by_side = outputs.iter().all(|output| output.is_of_judgement());
+        let side_by_side = side_by_side && self.ground.base.calibration.is_none();
+        let mut lanes = side_by_side.then(Lanes::default);
         let mut row = rows.start;
         while row < rows.end {
             if cancelled.load(Ordering::Relaxed) {
@@ -98,7 +111,7 @@ impl Sweep {
             }
             let places = self.places(row);
             let run = (length - places[fastest]).min(rows.end - row).min(LOOK_EVERY);
-            self.run(places, fastest, run, outputs, &mut desk, &mut block);
+            self.run(places, fastest, run, outputs, (&mut desk, lanes.as_mut()), &mut block);
             row += run;
         }
         Ok(block)
@@ -150,7 +163,7 @@ impl Sweep {
         fastest: usize,
         run: usize,
         outputs: &[Output],
-        desk: &mut Desk,
+        (desk, lanes): (&mut Desk, Option<&mut Lanes>),
         block: &mut Block,
     ) {
         let Self { ground, layers, confidence, .. } = self;
@@ -165,14 +178,24 @@ impl Sweep {
         let mut keys = layers.keys(&places);
         let steps = layers.steps(fastest);
         let set = ground.base.coefficients;
+        if let Some(Lanes { arch, given, judged }) = lanes {
+            layers.make_still(ground, desk, &places, (&keys, &steps));
+            if let Some(condition) = layers.fill(given, desk, (&keys, &steps), run) {
+                let doubt = condition.doubt;
+                arch.dispatch(Step { set, confidence: confidence.level, doubt, given, judged });
+                block.push_lanes(outputs, (given.weber(), judged), *confidence, run);
+                return;
+            }
+        }
         for step in 0..run {
             places[fastest] = first + step;
             match layers.parts(ground, desk, &places, &keys) {
                 Ok(parts) => {
                     let judged = judge(
                         set,
+                        ground.base.calibration.as_ref(),
                         confidence.level,
-                        &parts.stream.approach,
+                        &(&parts.stream.approach).into(),
                         (&parts.edge.edge, &parts.rim.rim),
                         (
                             &parts.condition.doubt,

@@ -1,6 +1,9 @@
 //! What can be asked of each point of a sweep.
 
-use super::point::Point;
+use super::{
+    lanes::{Judged, LANES, Lane},
+    point::Point,
+};
 use crate::physics::{
     quantity::{self, DEGREE},
     separation::deflection::{Deflection, deflection},
@@ -141,6 +144,46 @@ impl Output {
     #[must_use]
     pub const fn is_word(self) -> bool {
         matches!(self, Self::Verdict | Self::Regime)
+    }
+
+    /// Whether points are judged side by side for it: it takes nothing but a judgement and the Weber number.
+    pub(super) const fn is_of_judgement(self) -> bool {
+        matches!(
+            self,
+            Self::SafetyFactor
+                | Self::SafetyFactorLow
+                | Self::SafetyFactorHigh
+                | Self::DribbleProbability
+                | Self::Verdict
+                | Self::Margin
+                | Self::MarginStandardUncertainty
+                | Self::Weber
+                | Self::CriticalWeber
+        )
+    }
+
+    /// The numbers of points judged side by side; nothing for a word.
+    pub(super) fn lane(
+        self,
+        weber: &Lane,
+        judged: &Judged,
+        two_sided: f64,
+        numbers: &mut Vec<f64>,
+        run: usize,
+    ) {
+        let Judged { critical_weber, margin, standard_uncertainty, dribble_probability } = judged;
+        let mut each = |number: &dyn Fn(usize) -> f64| numbers.extend((0..run.min(LANES)).map(number));
+        match self {
+            Self::SafetyFactor => each(&|i| weber[i] / critical_weber[i]),
+            Self::SafetyFactorLow => each(&|i| libm::exp(margin[i] - two_sided * standard_uncertainty[i])),
+            Self::SafetyFactorHigh => each(&|i| libm::exp(margin[i] + two_sided * standard_uncertainty[i])),
+            Self::DribbleProbability => numbers.extend(dribble_probability.iter().take(run)),
+            Self::Margin => numbers.extend(margin.iter().take(run)),
+            Self::MarginStandardUncertainty => numbers.extend(standard_uncertainty.iter().take(run)),
+            Self::Weber => numbers.extend(weber.iter().take(run)),
+            Self::CriticalWeber => numbers.extend(critical_weber.iter().take(run)),
+            _ => {}
+        }
     }
 
     /// The number at this point; NaN where there is none.

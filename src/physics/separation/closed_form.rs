@@ -6,7 +6,7 @@
 //! the approach film ([`super::numbers`]). As r/h → 0 and without gravity it keeps the shape of the sharp-edge balance ([`super`]).
 
 use super::numbers::Numbers;
-use crate::physics::quantity::DEGREE;
+use crate::physics::{numerics::ln, quantity::DEGREE};
 
 /// A named set of coefficients of the closed form, with the region it was fitted in.
 ///
@@ -109,6 +109,21 @@ pub struct Edge {
 }
 
 impl Edge {
+    /// As numbers, for many edges side by side.
+    #[must_use]
+    pub const fn to_array(&self) -> [f64; 6] {
+        let Self { contact_angle, turn, cling, by_contact_angle, by_turn, doubt } = *self;
+        [contact_angle, turn, cling, by_contact_angle, by_turn, doubt]
+    }
+
+    /// From the numbers of [`Edge::to_array`].
+    #[inline(always)]
+    #[must_use]
+    pub const fn from_array(numbers: [f64; 6]) -> Self {
+        let [contact_angle, turn, cling, by_contact_angle, by_turn, doubt] = numbers;
+        Self { contact_angle, turn, cling, by_contact_angle, by_turn, doubt }
+    }
+
     /// Prepares the edge for contact angle θ (rad, 0 to π) and turn α (rad, above 0 to π).
     #[must_use]
     pub fn new(set: &CoefficientSet, contact_angle: f64, turn: f64) -> Self {
@@ -138,6 +153,12 @@ impl Edge {
         self.contact_angle
     }
 
+    /// Turn of the edge, rad.
+    #[must_use]
+    pub fn turn(&self) -> f64 {
+        self.turn
+    }
+
     /// The threshold for a stream with these numbers.
     #[must_use]
     pub fn threshold(&self, set: &CoefficientSet, numbers: &Numbers) -> Threshold {
@@ -146,6 +167,7 @@ impl Edge {
     }
 
     /// The threshold for a stream and a rounding whose shares of the closed form are known.
+    #[inline(always)]
     #[must_use]
     pub fn threshold_for(&self, set: &CoefficientSet, film: &FilmTerms, rim: &RimTerms) -> Threshold {
         let [_, b, c] = set.radius;
@@ -160,7 +182,7 @@ impl Edge {
         let critical_weber = total / set.momentum;
         Threshold {
             critical_weber,
-            ln_critical_weber: libm::log(critical_weber),
+            ln_critical_weber: ln(critical_weber),
             by_ln_radius_ratio: share * (b * radius + f * blunt),
             by_contact_angle: self.by_contact_angle * bracket * per_total,
             by_turn: self.by_turn * bracket * per_total,
@@ -177,6 +199,7 @@ impl Edge {
     }
 
     /// [`Edge::reach`] for a stream and a rounding whose shares of the closed form are known.
+    #[inline(always)]
     #[must_use]
     pub fn reach_for(&self, set: &CoefficientSet, film: &FilmTerms, rim: &RimTerms) -> Reach {
         // An ideally sharp edge is infinitely many halvings below the range, yet the limit r/h → 0 is known and nearly reached there; so the
@@ -184,14 +207,9 @@ impl Edge {
         let [r_low, r_high] = set.radius_ratio;
         let ratio = rim.radius / film.thickness;
         let offset = 0.2 * r_low;
-        let halvings = if ratio < r_low {
-            libm::log2((r_low + offset) / (ratio + offset))
-        } else if ratio > r_high {
-            libm::log2(ratio / r_high)
-        } else {
-            0.0
-        };
-        let radius_ratio = PER_DOUBLING * halvings;
+        // One of the two at most is above 1.
+        let beyond = ((r_low + offset) / (ratio + offset)).max(ratio / r_high).max(1.0);
+        let radius_ratio = PER_DOUBLING / LN_2 * ln(beyond);
         let variance = film.doubt + self.doubt + radius_ratio * radius_ratio;
         Reach {
             standard_uncertainty: variance.sqrt(),
@@ -224,6 +242,39 @@ pub struct FilmTerms {
 }
 
 impl FilmTerms {
+    /// As numbers, for many films side by side.
+    #[must_use]
+    pub const fn to_array(&self) -> [f64; 7] {
+        let Self { thickness, reynolds, froude, radius, fall, blunt, doubt } = *self;
+        [thickness, reynolds, froude, radius, fall, blunt, doubt]
+    }
+
+    /// From the numbers of [`FilmTerms::to_array`].
+    #[inline(always)]
+    #[must_use]
+    pub const fn from_array(numbers: [f64; 7]) -> Self {
+        let [thickness, reynolds, froude, radius, fall, blunt, doubt] = numbers;
+        Self { thickness, reynolds, froude, radius, fall, blunt, doubt }
+    }
+
+    /// Its thickness, in the unit that it was made with.
+    #[must_use]
+    pub const fn thickness(&self) -> f64 {
+        self.thickness
+    }
+
+    /// Its Reynolds number.
+    #[must_use]
+    pub const fn reynolds(&self) -> f64 {
+        self.reynolds
+    }
+
+    /// Its Froude number.
+    #[must_use]
+    pub const fn froude(&self) -> f64 {
+        self.froude
+    }
+
     /// The share of a film of this thickness (in any unit, that of the radius it will meet), Reynolds and Froude number.
     #[must_use]
     pub fn of(set: &CoefficientSet, thickness: f64, reynolds: f64, froude: f64) -> Self {
@@ -260,6 +311,19 @@ pub struct RimTerms {
 }
 
 impl RimTerms {
+    /// As numbers, for many roundings side by side.
+    #[must_use]
+    pub const fn to_array(&self) -> [f64; 3] {
+        [self.radius, self.power, self.gravity_power]
+    }
+
+    /// From the numbers of [`RimTerms::to_array`].
+    #[inline(always)]
+    #[must_use]
+    pub const fn from_array([radius, power, gravity_power]: [f64; 3]) -> Self {
+        Self { radius, power, gravity_power }
+    }
+
     /// The share of a rounding of this radius (in the unit of the film's thickness); 0 is ideally sharp.
     #[must_use]
     pub fn of(set: &CoefficientSet, radius: f64) -> Self {
@@ -269,6 +333,12 @@ impl RimTerms {
             power: libm::exp(set.radius[1] * ln_radius),
             gravity_power: libm::exp(set.gravity[2] * ln_radius),
         }
+    }
+
+    /// Its radius, in the unit that it was made with.
+    #[must_use]
+    pub fn radius(&self) -> f64 {
+        self.radius
     }
 }
 
@@ -300,6 +370,8 @@ pub struct Reach {
     /// θ outside the range of the runs.
     pub contact_angle: bool,
 }
+
+use core::f64::consts::LN_2;
 
 const LN_100: f64 = 4.605_170_185_988_092;
 

@@ -1,6 +1,8 @@
 //! A file per resource: its request, its answer and its handler stand together.
 
 pub mod batch;
+pub mod calibration;
+pub mod calibrations;
 pub mod contact_angles;
 pub mod designs;
 pub mod docs;

@@ -6,6 +6,7 @@
 mod axis;
 mod bars;
 mod contour;
+mod course;
 mod curve;
 mod histogram;
 mod lip;
@@ -24,6 +25,7 @@ mod zone;
 
 pub use axis::{Axis, Scale};
 pub use bars::{Bar, BarChart, MOST_BARS, bars};
+pub use course::course;
 pub use curve::{Curve, CurveChart, CurvePoint, MOST_CURVES, Mark, curve};
 pub use histogram::{Histogram, Limit, Side, histogram};
 pub use lip::{Between, LipPicture, lip};
@@ -33,7 +35,7 @@ pub use page::Heading;
 pub use panels::{Panel, Panels, Span, panels};
 pub use probability::{ProbabilityChart, Seen, probability};
 pub use stack::stack;
-pub use sweep::{Asked, Drawn, FEW, NotDrawable, SweepAxis, SweepTable, sweep};
+pub use sweep::{Asked, Drawn, FEW, NotDrawable, SweepAxis, SweepTable, drawable, sweep, sweep_picture};
 pub use vessel::{MOST_MOMENTS, VesselMoment, VesselPicture, VesselStream, vessel};
 
 /// The media type of the pictures.

@@ -55,11 +55,26 @@ const KEY: f64 = 22.0;
 /// Draws the panels.
 #[must_use]
 pub fn panels(chart: &Panels<'_>) -> String {
+    let mut page = Page::new(WIDTH, height(chart), &chart.heading);
+    let top = page.top;
+    draw(&mut page.svg, chart, top, WIDTH);
+    page.svg.finish(chart.heading.title, &description(chart))
+}
+
+/// How high they are.
+pub(super) fn height(chart: &Panels<'_>) -> f64 {
     let count = chart.panels.len();
-    let key = if chart.spans.is_empty() { 0.0 } else { KEY };
-    let body = key + HEIGHT * count as f64 + GAP * count.saturating_sub(1) as f64 + BELOW;
-    let mut page = Page::new(WIDTH, body, &chart.heading);
-    let top = page.top + key;
+    key(chart) + HEIGHT * count as f64 + GAP * count.saturating_sub(1) as f64 + BELOW
+}
+
+fn key(chart: &Panels<'_>) -> f64 {
+    if chart.spans.is_empty() { 0.0 } else { KEY }
+}
+
+/// Draws the panels from this height down, on a sheet of this width.
+pub(super) fn draw(svg: &mut Svg, chart: &Panels<'_>, from: f64, width: f64) {
+    let count = chart.panels.len();
+    let top = from + key(chart);
     let rulers: Vec<Ruler> = chart
         .panels
         .iter()
@@ -74,9 +89,8 @@ pub fn panels(chart: &Panels<'_>) -> String {
     let left = MARGIN + 24.0 + rulers.iter().map(label_width).fold(0.0, f64::max);
     let xs: Vec<f64> = chart.panels.iter().flat_map(|p| p.points.iter().map(|p| p.x)).collect();
     let x = Extent { axis: chart.x, values: &xs, round: false };
-    let svg = &mut page.svg;
     for (index, (panel, ruler)) in chart.panels.iter().zip(rulers).enumerate() {
-        let plot = Plot::placed(&x, ruler, [left, WIDTH - MARGIN - 12.0]);
+        let plot = Plot::placed(&x, ruler, [left, width - MARGIN - 12.0]);
         spans(svg, &plot, chart.spans);
         plot.grid(svg);
         one(svg, &plot, panel);
@@ -85,11 +99,10 @@ pub fn panels(chart: &Panels<'_>) -> String {
         }
         let last = index + 1 == count;
         plot.frame(svg, last.then_some(&chart.x), &panel.axis);
-        if index == 0 && key > 0.0 {
-            legend(svg, chart.spans, [left, page.top]);
+        if index == 0 && !chart.spans.is_empty() {
+            legend(svg, chart.spans, [left, from]);
         }
     }
-    page.svg.finish(chart.heading.title, &description(chart))
 }
 
 fn spans(svg: &mut Svg, plot: &Plot, spans: &[Span<'_>]) {
@@ -163,7 +176,7 @@ fn legend(svg: &mut Svg, spans: &[Span<'_>], [left, top]: [f64; 2]) {
     svg.text([left + 28.0, top + 10.0], &words, Letters::new(11.0));
 }
 
-fn description(chart: &Panels<'_>) -> String {
+pub(super) fn description(chart: &Panels<'_>) -> String {
     let mut out = format!("{} panels over {}.", chart.panels.len(), chart.x.name);
     for panel in chart.panels {
         let known = || panel.points.iter().filter(|p| p.y.is_finite());

@@ -8,7 +8,7 @@ use super::{
     page::Heading,
 };
 use crate::{
-    analysis::decision::Verdict,
+    analysis::{decision::Verdict, sweep::PictureTable},
     physics::{numerics::normal_quantile, separation::numbers::FREE_SHEET_WEBER},
 };
 
@@ -83,6 +83,57 @@ pub enum NotDrawable {
     Columns,
 }
 
+/// Whether a sweep over so many axes with so many points can be drawn: to be asked before it is computed.
+///
+/// # Errors
+/// When it has no axes or more than two, or too many points.
+pub const fn drawable(axes: usize, points: usize) -> Result<(), NotDrawable> {
+    match axes {
+        1 | 2 if points > MOST_MAP_POINTS => Err(NotDrawable::Points(points)),
+        1 | 2 => Ok(()),
+        _ => Err(NotDrawable::Axes(axes)),
+    }
+}
+
+/// Draws what [`Sweep::picture_table`](crate::analysis::sweep::Sweep::picture_table) gives.
+///
+/// # Errors
+/// As [`sweep`].
+pub fn sweep_picture(
+    table: &PictureTable,
+    quantity: Drawn,
+    heading: Heading<'_>,
+) -> Result<String, NotDrawable> {
+    let axes: Vec<SweepAxis<'_>> = table
+        .axes
+        .iter()
+        .map(|axis| {
+            let named = axis.field.quantity();
+            // Negative values can be spaced by ratio too, but have no place on a logarithmic axis.
+            let log = axis.is_logarithmic && axis.values.iter().all(|v| *v > 0.0);
+            let scale = if log { Scale::Log } else { Scale::Linear };
+            SweepAxis { axis: Axis { name: named.name, unit: named.unit, scale }, values: &axis.values }
+        })
+        .collect();
+    sweep(&SweepTable {
+        heading,
+        axes: &axes,
+        quantity,
+        safety_factor: &table.safety_factor,
+        low: &table.low,
+        high: &table.high,
+        dribble_probability: &table.dribble_probability,
+        weber: &[],
+        verdicts: &table.verdicts,
+        confidence: table.confidence,
+        asked: table.asked.as_ref().map(|point| Asked {
+            at: &point.at,
+            safety_factor: point.decision.safety_factor(),
+            dribble_probability: point.decision.dribble_probability,
+        }),
+    })
+}
+
 /// An axis of up to so many values makes one curve each instead of a map (own judgement: the most that can be told apart at a glance).
 pub const FEW: usize = 5;
 
@@ -95,9 +146,7 @@ const CHANCE: Axis<'_> = Axis { name: "dribble probability", unit: "", scale: Sc
 /// When it has no axes or more than two, too many points, or columns that do not fit.
 pub fn sweep(table: &SweepTable<'_>) -> Result<String, NotDrawable> {
     let count = table.axes.iter().map(|a| a.values.len()).fold(1, usize::saturating_mul);
-    if count > MOST_MAP_POINTS {
-        return Err(NotDrawable::Points(count));
-    }
+    drawable(table.axes.len(), count)?;
     let numbers = [table.safety_factor, table.low, table.high, table.dribble_probability];
     let weber_fits = table.weber.is_empty() || table.weber.len() == count;
     if numbers.iter().any(|column| column.len() != count) || table.verdicts.len() != count || !weber_fits {

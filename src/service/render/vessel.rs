@@ -46,7 +46,7 @@ pub enum VesselStream {
 /// The most moments of one picture.
 pub const MOST_MOMENTS: usize = 12;
 
-const WIDTH: f64 = 820.0;
+pub(super) const WIDTH: f64 = 820.0;
 const ACROSS: usize = 4;
 const CAPTION: f64 = 40.0;
 /// How far outside the wall a dribble is drawn.
@@ -62,14 +62,31 @@ pub fn vessel(picture: &VesselPicture<'_>) -> String {
     } else {
         picture.heading.note.to_owned()
     };
-    let across = shown.len().clamp(1, ACROSS);
-    let rows = shown.len().div_ceil(across).max(1);
-    let cell = [(WIDTH - 2.0 * MARGIN) / across as f64, if across < 3 { 330.0 } else { 230.0 }];
-    let mut page = Page::new(
-        WIDTH,
-        (cell[1] + CAPTION) * rows as f64 + 34.0,
-        &Heading { note: &note, ..picture.heading },
-    );
+    let mut page = Page::new(WIDTH, height(shown), &Heading { note: &note, ..picture.heading });
+    let (top, bottom) = (page.top, page.bottom);
+    draw(&mut page.svg, shown, top, bottom);
+    page.svg.finish(picture.heading.title, &description(picture.moments))
+}
+
+fn across(shown: &[VesselMoment<'_>]) -> usize {
+    shown.len().clamp(1, ACROSS)
+}
+
+/// A moment's place, without its caption.
+fn cell(shown: &[VesselMoment<'_>]) -> [f64; 2] {
+    let across = across(shown);
+    [(WIDTH - 2.0 * MARGIN) / across as f64, if across < 3 { 330.0 } else { 230.0 }]
+}
+
+/// How high these moments are.
+pub(super) fn height(shown: &[VesselMoment<'_>]) -> f64 {
+    let rows = shown.len().div_ceil(across(shown)).max(1);
+    (cell(shown)[1] + CAPTION) * rows as f64 + 34.0
+}
+
+/// Draws the moments between these heights, on a sheet [`WIDTH`] wide.
+pub(super) fn draw(svg: &mut Svg, shown: &[VesselMoment<'_>], top: f64, bottom: f64) {
+    let (across, cell) = (across(shown), cell(shown));
     let size = |axis: usize| {
         let one = |m: &VesselMoment<'_>| {
             let [low, high] = ends(m, axis);
@@ -79,19 +96,17 @@ pub fn vessel(picture: &VesselPicture<'_>) -> String {
     };
     // Room for what leaves.
     let scale = ((cell[0] - 56.0) / size(0)).min((cell[1] - 44.0) / size(1));
-    let (top, bottom) = (page.top, page.bottom);
     for (index, moment) in shown.iter().enumerate() {
         let corner =
             [MARGIN + cell[0] * (index % across) as f64, top + (cell[1] + CAPTION) * (index / across) as f64];
-        one(&mut page.svg, moment, corner, cell, scale);
+        one(svg, moment, corner, cell, scale);
     }
     if shown.is_empty() {
         let middle = [0.5 * WIDTH, 0.5 * (top + bottom)];
-        page.svg.text(middle, "no moment to show", Letters::new(12.0).middle());
+        svg.text(middle, "no moment to show", Letters::new(12.0).middle());
     } else {
-        scale_bar(&mut page.svg, scale, bottom - 8.0);
+        scale_bar(svg, scale, bottom - 8.0);
     }
-    page.svg.finish(picture.heading.title, &description(picture, shown))
 }
 
 fn ends(moment: &VesselMoment<'_>, axis: usize) -> [f64; 2] {
@@ -203,13 +218,34 @@ fn outside(wall: &[[f64; 2]], lip: [f64; 2], length: f64) -> Vec<[f64; 2]> {
         }
         let share = (left / step).min(1.0);
         let off = [sense * dy / step, -sense * dx / step];
-        run.extend([0.0, share].map(|s| [pair[0][0] + s * dx + off[0], pair[0][1] + s * dy + off[1]]));
+        let [from, to] = [0.0, share].map(|s| [pair[0][0] + s * dx + off[0], pair[0][1] + s * dy + off[1]]);
+        // In an inner corner the two lines cross: the way goes over where they do.
+        if let [.., before, end] = run[..]
+            && run.len() > 2
+            && let Some(corner) = crossing_point([before, end], [from, to])
+        {
+            run.pop();
+            run.extend([corner, to]);
+        } else {
+            run.extend([from, to]);
+        }
         left -= step;
         if left <= 0.0 {
             break;
         }
     }
     run
+}
+
+/// Where two stretches cross.
+fn crossing_point([a, b]: [[f64; 2]; 2], [c, d]: [[f64; 2]; 2]) -> Option<[f64; 2]> {
+    let (first, second) = ([b[0] - a[0], b[1] - a[1]], [d[0] - c[0], d[1] - c[1]]);
+    let product = |u: [f64; 2], v: [f64; 2]| u[0] * v[1] - u[1] * v[0];
+    let between = [c[0] - a[0], c[1] - a[1]];
+    let across = product(first, second);
+    let (s, t) = (product(between, second) / across, product(between, first) / across);
+    let inside = |share: f64| (0.0..=1.0).contains(&share);
+    (inside(s) && inside(t)).then(|| [a[0] + s * first[0], a[1] + s * first[1]])
 }
 
 fn scale_bar(svg: &mut Svg, scale: f64, y: f64) {
@@ -227,9 +263,9 @@ fn scale_bar(svg: &mut Svg, scale: f64, y: f64) {
     svg.text([WIDTH - MARGIN, y], words, Letters::new(10.0).colour(QUIET).end());
 }
 
-fn description(picture: &VesselPicture<'_>, shown: &[VesselMoment<'_>]) -> String {
-    let mut out = format!("A tilted vessel at {} moments, to scale.", picture.moments.len());
-    for moment in shown {
+pub(super) fn description(moments: &[VesselMoment<'_>]) -> String {
+    let mut out = format!("A tilted vessel at {} moments, to scale.", moments.len());
+    for moment in moments.iter().take(MOST_MOMENTS) {
         let level = match (moment.level, moment.lip) {
             (None, _) => "empty".to_owned(),
             (Some(level), Some(lip)) => {
@@ -261,6 +297,15 @@ mod tests {
         assert_eq!(filled, [[0.0, 4.0], [0.0, 10.0], [10.0, 10.0], [10.0, 4.0]]);
         assert!(below(&square, 20.0).is_empty());
         assert_eq!(below(&square, -5.0).len(), 4);
+    }
+
+    #[test]
+    fn a_dribble_cuts_inner_corners() {
+        // A shelf that reaches out to the right, and the wall below it; inside is to the left and above.
+        let wall = [[30.0, 0.0], [10.0, 0.0], [10.0, 50.0], [-10.0, 50.0], [-10.0, 0.0]];
+        let run = outside(&wall, wall[0], 40.0);
+        let corner = [10.0 + OUTSIDE, OUTSIDE];
+        assert_eq!(run, [wall[0], [30.0, OUTSIDE], corner, [10.0 + OUTSIDE, 20.0]]);
     }
 
     #[test]

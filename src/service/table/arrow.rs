@@ -9,7 +9,21 @@ use arrow_schema::{ArrowError, DataType, Field, Schema, SchemaRef};
 use bytes::Bytes;
 
 use super::Head;
-use crate::analysis::sweep::{Block, Column};
+use crate::{
+    analysis::sweep::{Block, Column},
+    service::fingerprint::ModelAnswer,
+};
+
+/// What a table says of its model.
+#[must_use]
+pub fn about(model: &ModelAnswer) -> HashMap<String, String> {
+    let ModelAnswer { version, coefficients, fingerprint } = model;
+    HashMap::from([
+        ("version".to_owned(), (*version).to_owned()),
+        ("coefficients".to_owned(), (*coefficients).to_owned()),
+        ("fingerprint".to_owned(), fingerprint.clone()),
+    ])
+}
 
 /// The schema of a table: each field with its unit and meaning as metadata, the table with `about`.
 #[must_use]
@@ -33,13 +47,26 @@ pub fn schema(heads: &[Head], about: HashMap<String, String>) -> SchemaRef {
 /// # Errors
 /// When the block does not fit the schema.
 pub fn batch(schema: &SchemaRef, block: Block) -> Result<RecordBatch, ArrowError> {
-    let axes = block.axes.into_iter().map(|values| numbers(values, false));
-    let outputs = block.columns.into_iter().map(|column| match column {
-        Column::Numbers(values) => numbers(values, true),
+    let faults = block.faults.codes().map_or_else(|| vec![None; block.len()], <[_]>::to_vec);
+    let axes = block.axes.into_iter().map(Column::Numbers);
+    rows(schema, axes.chain(block.columns).chain([Column::Words(faults)]))
+}
+
+/// Columns of equal length as a record batch; numbers are not copied. A number that is not finite becomes null where the schema lets a row have none.
+///
+/// # Errors
+/// When the columns do not fit the schema.
+pub fn rows(
+    schema: &SchemaRef,
+    columns: impl IntoIterator<Item = Column>,
+) -> Result<RecordBatch, ArrowError> {
+    let columns = columns.into_iter().enumerate().map(|(i, column)| match column {
+        Column::Numbers(values) => {
+            numbers(values, schema.fields().get(i).is_some_and(|field| field.is_nullable()))
+        }
         Column::Words(values) => words(values),
     });
-    let columns = axes.chain(outputs).chain([words(block.faults)]).collect();
-    RecordBatch::try_new(schema.clone(), columns)
+    RecordBatch::try_new(schema.clone(), columns.collect())
 }
 
 fn numbers(values: Vec<f64>, may_be_empty: bool) -> ArrayRef {
@@ -49,9 +76,6 @@ fn numbers(values: Vec<f64>, may_be_empty: bool) -> ArrayRef {
 }
 
 fn words(values: Vec<Option<&'static str>>) -> ArrayRef {
-    if values.iter().all(Option::is_none) {
-        return Arc::new(StringArray::new_null(values.len()));
-    }
     Arc::new(StringArray::from(values))
 }
 

@@ -2,6 +2,9 @@
 
 use super::{Cells, Head};
 
+/// What is said of it on its way out (RFC 4180, 3).
+pub const CONTENT_TYPE: &str = "text/csv; charset=utf-8; header=present";
+
 /// The line of names.
 #[must_use]
 pub fn header(heads: &[Head]) -> Vec<u8> {
@@ -25,6 +28,7 @@ pub fn lines(columns: &[Cells<'_>], rows: usize) -> Vec<u8> {
                         text.extend_from_slice(buffer.format_finite(*number).as_bytes());
                     }
                 }
+                Cells::Nothing(_) => {}
                 Cells::Words(words) => {
                     text.extend_from_slice(words.get(row).copied().flatten().unwrap_or_default().as_bytes());
                 }

@@ -19,6 +19,7 @@ pub fn items(cells: Cells<'_>, first: bool) -> Vec<u8> {
                 }
             }
         }
+        Cells::Nothing(rows) => text = b",null".repeat(rows),
         Cells::Words(words) => {
             text.reserve(words.len() * 12);
             for word in words {

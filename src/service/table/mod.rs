@@ -37,13 +37,20 @@ pub enum Cells<'a> {
     Numbers(&'a [f64]),
     /// Words.
     Words(&'a [Option<&'static str>]),
+    /// Nothing in so many rows.
+    Nothing(usize),
 }
 
 /// The columns of a block: axes, outputs, fault.
 pub fn columns(block: &Block) -> impl Iterator<Item = Cells<'_>> {
     let axes = block.axes.iter().map(|values| Cells::Numbers(values));
     let outputs = block.columns.iter().map(Cells::from);
-    axes.chain(outputs).chain([Cells::Words(&block.faults)])
+    axes.chain(outputs).chain([faults(block)])
+}
+
+/// The fault column of a block.
+pub fn faults(block: &Block) -> Cells<'_> {
+    block.faults.codes().map_or(Cells::Nothing(block.len()), Cells::Words)
 }
 
 impl<'a> From<&'a crate::analysis::sweep::Column> for Cells<'a> {

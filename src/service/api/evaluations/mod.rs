@@ -10,6 +10,8 @@ use http::{HeaderMap, HeaderValue, header};
 
 pub use answer::EvaluationAnswer;
 pub use parts::{IntervalAnswer, VerdictAnswer};
+pub use picture::conditions;
+pub(super) use picture::materials;
 pub use request::{EXAMPLE, EvaluationRequest, MethodRequest, OuterFaceRequest, PourRequest};
 
 use crate::{

@@ -24,7 +24,7 @@ pub(super) fn picture(spec: &Spec, evaluation: &Evaluation, answer: &EvaluationA
         answer.model.version, answer.model.coefficients, answer.model.fingerprint
     );
     lip(&LipPicture {
-        heading: Heading { title: &title(verdict, answer), subtitle: &subtitle(spec), note: &note },
+        heading: Heading { title: &title(verdict, answer), subtitle: &conditions(spec), note: &note },
         verdict,
         section: spec.section,
         radius_mm: spec.radius_mm,
@@ -54,7 +54,8 @@ fn title(verdict: Verdict, answer: &EvaluationAnswer<'_>) -> String {
     format!("{says}; dribble probability {}", percent(probability))
 }
 
-fn subtitle(spec: &Spec) -> String {
+/// What is poured over what.
+pub(in crate::service::api) fn materials(spec: &Spec) -> String {
     let liquid = match &spec.liquid {
         LiquidSpec::Catalogue { entry, conditions, .. } => {
             format!("{} at {}", entry.name, with_unit(conditions.temperature_c, "°C"))
@@ -72,8 +73,15 @@ fn subtitle(spec: &Spec) -> String {
         OuterFace::Dry => "dry",
         OuterFace::Wet => "wet",
     };
+    format!("{liquid} · {surface}, outer face {face}")
+}
+
+/// The conditions of a question in a line.
+#[must_use]
+pub fn conditions(spec: &Spec) -> String {
     format!(
-        "{liquid} · {surface}, outer face {face} · {} · verdict and intervals at {} confidence",
+        "{} · {} · verdict and intervals at {} confidence",
+        materials(spec),
         with_unit(spec.flow_ml_s, "mL/s"),
         percent(spec.confidence)
     )

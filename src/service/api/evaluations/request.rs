@@ -16,6 +16,7 @@ use crate::{
     physics::separation::closed_form::{CoefficientSet, DEFAULT_SET, SETS},
     service::{
         api::{
+            calibration::CalibrationPart,
             lip::{EdgeRequest, LipRequest},
             liquid::LiquidRequest,
             quantity::{Confidence, Flow, distinct, given},
@@ -31,6 +32,10 @@ use crate::{
 #[serde(deny_unknown_fields)]
 #[schema(examples(example))]
 pub struct EvaluationRequest {
+    /// What bench pours have taught of the critical Weber number: the `calibration` that `POST /v1/calibrations` returned, whole and unchanged.
+    #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
+    #[schema(nullable = false)]
+    pub calibration: Option<Box<CalibrationPart>>,
     /// Coefficient set of the closed form, by name; default the newest.
     #[serde(default = "default_coefficients")]
     #[schema(example = "set-1")]
@@ -181,6 +186,9 @@ impl EvaluationRequest {
             let detail = format!("there is no coefficient set {}", quoted(&self.coefficients));
             note(Fault::new("/coefficients", "unknown_id", detail).choices(SETS.iter().map(|set| set.id)));
         }
+        let calibration = self.calibration.as_ref().and_then(|part| {
+            part.calibration("/calibration", &self.coefficients).map_err(|found| faults.extend(found)).ok()
+        });
         let EdgeRequest::Rounded(edge) = self.lip.edge;
         let limits = self.limits(&mut faults);
         let uncertainties = self.uncertainties(&mut faults);
@@ -201,6 +209,7 @@ impl EvaluationRequest {
             confidence: self.confidence.get(),
             uncertainty: Uncertainties::default(),
             coefficients: coefficients.unwrap_or(DEFAULT_SET),
+            calibration,
         };
         for (field, value) in uncertainties {
             let part_known = match field.pointer().split('/').nth(1) {

@@ -16,6 +16,7 @@ use crate::{
     },
     service::{
         api::{
+            calibration::CalibrationPart,
             evaluations::{EvaluationRequest, MethodRequest, OuterFaceRequest, PourRequest},
             lip::LipRequest,
             liquid::LiquidRequest,
@@ -34,6 +35,10 @@ use crate::{
 #[serde(deny_unknown_fields)]
 #[schema(examples(example))]
 pub struct VesselPourRequest {
+    /// What bench pours have taught of the critical Weber number: the `calibration` that `POST /v1/calibrations` returned, whole and unchanged.
+    #[serde(default, deserialize_with = "given", skip_serializing_if = "Option::is_none")]
+    #[schema(nullable = false)]
+    pub calibration: Option<Box<CalibrationPart>>,
     /// Coefficient set of the closed form, by name; default the newest.
     #[serde(default = "default_coefficients")]
     #[schema(example = "set-1")]
@@ -249,6 +254,7 @@ impl VesselPourRequest {
         }
         // Lip, surface, liquid and their uncertainties are those of an evaluation.
         let lip = EvaluationRequest {
+            calibration: self.calibration.clone(),
             coefficients: self.coefficients.clone(),
             confidence: self.confidence,
             include: Vec::new(),

@@ -1,26 +1,25 @@
 //! The pour instant by instant, as columns.
 
+use arrow_schema::ArrowError;
 use serde::Serialize;
 use utoipa::ToSchema;
 
 use crate::{
-    analysis::pour::{Pour, Sample},
+    analysis::{
+        pour::{Pour, Sample},
+        sweep::Column,
+    },
     physics::quantity,
-    service::api::quantity::Number,
+    service::{
+        api::quantity::Number,
+        fingerprint::ModelAnswer,
+        table::{Cells, Head, arrow, csv},
+    },
 };
 
-/// A column's values.
-#[derive(Debug, Clone, PartialEq)]
-pub enum Column {
-    /// Numbers; NaN where there is none.
-    Numbers(Vec<f64>),
-    /// Words.
-    Words(Vec<Option<&'static str>>),
-}
-
-/// A column of the series.
-struct Head {
-    name: &'static str,
+/// A column of the series, and what an instant has in it.
+struct Entry {
+    head: Head,
     value: fn(&Sample) -> Cell,
 }
 
@@ -32,82 +31,113 @@ enum Cell {
 const MM: f64 = quantity::VESSEL_LENGTH.to_si;
 const ML: f64 = quantity::FILL.to_si;
 
-const fn number(name: &'static str, value: fn(&Sample) -> Cell) -> Head {
-    Head { name, value }
+/// A column that every instant has.
+const fn always(
+    name: &'static str,
+    unit: &'static str,
+    meaning: &'static str,
+    value: fn(&Sample) -> Cell,
+) -> Entry {
+    Entry { head: Head { name, unit, meaning, is_word: false, may_be_empty: false }, value }
+}
+
+/// A column of numbers that an instant may not have.
+const fn some(
+    name: &'static str,
+    unit: &'static str,
+    meaning: &'static str,
+    value: fn(&Sample) -> Cell,
+) -> Entry {
+    Entry { head: Head { name, unit, meaning, is_word: false, may_be_empty: true }, value }
+}
+
+/// A column of words that an instant may not have.
+const fn word(name: &'static str, meaning: &'static str, value: fn(&Sample) -> Cell) -> Entry {
+    Entry { head: Head { name, unit: "", meaning, is_word: true, may_be_empty: true }, value }
 }
 
 fn or_none(value: Option<f64>) -> Cell {
     Cell::Number(value.unwrap_or(f64::NAN))
 }
 
-/// The columns, in the order of a CSV.
-const HEADS: [Head; 14] = [
-    number("t_s", |s| Cell::Number(s.time)),
-    number("tilt_deg", |s| Cell::Number(s.tilt / quantity::TILT.to_si)),
-    number("floor_slope_deg", |s| Cell::Number(s.slope / quantity::RUN_SLOPE.to_si)),
-    number("head_mm", |s| Cell::Number(s.head / MM)),
-    number("remaining_ml", |s| Cell::Number(s.volume / ML)),
-    number("flow_ml_s", |s| Cell::Number(s.flow / quantity::FLOW.to_si)),
-    number("safety_factor", |s| or_none(s.decided.map(|d| d.safety_factor))),
-    number("safety_factor_low", |s| or_none(s.decided.map(|d| d.low))),
-    number("safety_factor_high", |s| or_none(s.decided.map(|d| d.high))),
-    number("verdict", |s| Cell::Word(s.decided.map(|d| d.verdict.as_str()))),
-    number("stream", |s| {
+/// The columns, in the order of a table.
+const ENTRIES: [Entry; 14] = [
+    always("t_s", "s", "time from the start of the course", |s| Cell::Number(s.time)),
+    always("tilt_deg", "deg", "tilt", |s| Cell::Number(s.tilt / quantity::TILT.to_si)),
+    always("floor_slope_deg", "deg", "slope of the lip's floor, downhill positive", |s| {
+        Cell::Number(s.slope / quantity::RUN_SLOPE.to_si)
+    }),
+    always("head_mm", "mm", "level above the lip's edge", |s| Cell::Number(s.head / MM)),
+    always("remaining_ml", "mL", "still in the vessel", |s| Cell::Number(s.volume / ML)),
+    always("flow_ml_s", "mL/s", "flow over the lip", |s| Cell::Number(s.flow / quantity::FLOW.to_si)),
+    some("safety_factor", "", "Weber number over critical Weber number", |s| {
+        or_none(s.decided.map(|d| d.safety_factor))
+    }),
+    some("safety_factor_low", "", "lower end of the safety factor's interval", |s| {
+        or_none(s.decided.map(|d| d.low))
+    }),
+    some("safety_factor_high", "", "upper end of the safety factor's interval", |s| {
+        or_none(s.decided.map(|d| d.high))
+    }),
+    word("verdict", "clean, marginal or dribbles at the confidence asked for", |s| {
+        Cell::Word(s.decided.map(|d| d.verdict.as_str()))
+    }),
+    word("stream", "what the stream does in the best estimate: clings or free", |s| {
         Cell::Word(match (s.flow > 0.0, s.attached) {
             (false, _) => None,
             (true, true) => Some("clings"),
             (true, false) => Some("free"),
         })
     }),
-    number("landing_mm", |s| or_none(s.landing.map(|l| 0.5 * (l.near + l.far) / MM))),
-    number("landing_near_mm", |s| or_none(s.landing.map(|l| l.near / MM))),
-    number("landing_far_mm", |s| or_none(s.landing.map(|l| l.far / MM))),
+    some("landing_mm", "mm", "distance from the edge to where the stream lands, middle of the band", |s| {
+        or_none(s.landing.map(|l| 0.5 * (l.near + l.far) / MM))
+    }),
+    some("landing_near_mm", "mm", "landing of a round jet", |s| or_none(s.landing.map(|l| l.near / MM))),
+    some("landing_far_mm", "mm", "landing in ballistic flight", |s| or_none(s.landing.map(|l| l.far / MM))),
 ];
 
-/// Names and values of the columns.
-pub fn columns(pour: &Pour) -> Vec<(&'static str, Column)> {
-    HEADS
+/// The columns' heads.
+pub fn heads() -> Vec<Head> {
+    ENTRIES.iter().map(|entry| entry.head).collect()
+}
+
+/// The columns, in the order of their heads.
+pub fn columns(pour: &Pour) -> Vec<Column> {
+    ENTRIES
         .iter()
-        .map(|head| {
-            let mut numbers = Vec::with_capacity(pour.samples.len());
+        .map(|entry| {
+            let mut numbers = Vec::new();
             let mut words = Vec::new();
             for sample in &pour.samples {
-                match (head.value)(sample) {
+                match (entry.value)(sample) {
                     Cell::Number(value) => numbers.push(value),
                     Cell::Word(word) => words.push(word),
                 }
             }
-            let column = if words.is_empty() { Column::Numbers(numbers) } else { Column::Words(words) };
-            (head.name, column)
+            if entry.head.is_word { Column::Words(words) } else { Column::Numbers(numbers) }
         })
         .collect()
 }
 
-/// The series as comma-separated values (RFC 4180): a line of names, then a line for each instant; what an instant does not have is left empty.
+/// The series as comma-separated values: a line for each instant.
 pub fn csv(pour: &Pour) -> Vec<u8> {
     let columns = columns(pour);
-    let names: Vec<&str> = columns.iter().map(|(name, _)| *name).collect();
-    let mut text = (names.join(",") + "\r\n").into_bytes();
-    let mut buffer = ryu_js::Buffer::new();
-    for row in 0..pour.samples.len() {
-        for (i, (_, column)) in columns.iter().enumerate() {
-            if i > 0 {
-                text.push(b',');
-            }
-            match column {
-                Column::Numbers(values) => {
-                    if let Some(value) = values.get(row).filter(|value| value.is_finite()) {
-                        text.extend_from_slice(buffer.format_finite(*value).as_bytes());
-                    }
-                }
-                Column::Words(words) => {
-                    text.extend_from_slice(words.get(row).copied().flatten().unwrap_or_default().as_bytes());
-                }
-            }
-        }
-        text.extend_from_slice(b"\r\n");
-    }
+    let cells: Vec<Cells<'_>> = columns.iter().map(Cells::from).collect();
+    let mut text = csv::header(&heads());
+    text.extend(csv::lines(&cells, pour.samples.len()));
     text
+}
+
+/// The series as an Arrow stream of one record batch.
+///
+/// # Errors
+/// None in practice: columns and heads stand in one list.
+pub fn arrow(pour: &Pour, model: &ModelAnswer) -> Result<Vec<u8>, ArrowError> {
+    let schema = arrow::schema(&heads(), arrow::about(model));
+    let mut written = arrow::Stream::new(&schema)?;
+    let mut pieces = written.pieces(&arrow::rows(&schema, columns(pour))?)?;
+    pieces.extend(written.end()?);
+    Ok(pieces.concat())
 }
 
 /// The pour instant by instant: columns of equal length. Instants at which the stream changes sides are among them; where a dry lip starts suddenly there are two of
@@ -160,7 +190,8 @@ pub struct SeriesAnswer {
 
 impl SeriesAnswer {
     pub fn new(pour: &Pour) -> Self {
-        let mut columns = columns(pour);
+        let names = ENTRIES.iter().map(|entry| entry.head.name);
+        let mut columns: Vec<(&str, Column)> = names.zip(columns(pour)).collect();
         let mut take = |name: &str| {
             let place = columns.iter().position(|(known, _)| *known == name);
             place.map(|place| columns.swap_remove(place).1)

@@ -1,7 +1,6 @@
 //! A sweep on its way out: pieces are computed on the threads kept for long work, a few ahead of the caller, and handed over in order.
 
 use std::{
-    collections::HashMap,
     ops::Range,
     sync::{
         Arc, OnceLock,
@@ -25,7 +24,7 @@ use crate::{
         fingerprint::ModelAnswer,
         heavy::piece,
         settings::cores,
-        table::{Cells, arrow, columns, csv, json},
+        table::{Cells, arrow, columns, csv, faults, json},
     },
 };
 
@@ -182,12 +181,7 @@ async fn write_csv(work: Arc<Work>, out: &Out) -> Result<(), Stopped> {
 
 async fn write_arrow(work: Arc<Work>, out: &Out) -> Result<(), Stopped> {
     let plan = &work.job.plan;
-    let ModelAnswer { version, coefficients, fingerprint } = &work.job.model;
-    let about = HashMap::from([
-        ("version".to_owned(), (*version).to_owned()),
-        ("coefficients".to_owned(), (*coefficients).to_owned()),
-        ("fingerprint".to_owned(), fingerprint.clone()),
-    ]);
+    let about = arrow::about(&work.job.model);
     let schema = arrow::schema(&heads(&plan.axes, &plan.outputs), about);
     let mut written = arrow::Stream::new(&schema).map_err(|_| Stopped::Failed)?;
     let batch = {
@@ -303,14 +297,14 @@ fn column(work: &Work, part: Part, rows: Range<usize>) -> Result<Vec<u8>, Cancel
             Part::Output(index) => block.columns.get(index).map(Cells::from),
             Part::Axis(_) | Part::Fault => None,
         };
-        return Ok(json::items(cells.unwrap_or(Cells::Words(&block.faults)), first));
+        return Ok(json::items(cells.unwrap_or_else(|| faults(block)), first));
     }
     let output = match part {
         Part::Output(index) => work.job.plan.outputs.get(index),
         Part::Axis(_) | Part::Fault => None,
     };
     let block = work.block(rows, output.map_or(&[], std::slice::from_ref))?;
-    let cells = block.columns.first().map_or(Cells::Words(&block.faults), Cells::from);
+    let cells = block.columns.first().map_or_else(|| faults(&block), Cells::from);
     Ok(json::items(cells, first))
 }
 
