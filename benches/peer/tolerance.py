@@ -32,7 +32,7 @@ FIELDS = [
     ("/lip/edge/rounded/turn_deg", 125.0, 1.5, DEGREE),
     ("/surface/measured/advancing_deg", 84.0, 5.0, DEGREE),
     ("/lip/section/sheet/width_mm", 24.0, 0.3, 1e-3),
-    ("/pour/flow_ml_s", 150.0, 20.0, 1e-6),
+    ("/pour/flow_ml_s", 95.0, 10.0, 1e-6),
 ]
 MEAN = np.array([f[1] for f in FIELDS])
 SD = np.array([f[2] for f in FIELDS])
@@ -50,7 +50,7 @@ def request(trials):
             },
             "surface": {"measured": {"advancing_deg": 84}},
             "liquid": {"measured": {"density_kg_m3": DENSITY, "viscosity_mpa_s": 2.1, "surface_tension_mn_m": 46}},
-            "pour": {"flow_ml_s": 150},
+            "pour": {"flow_ml_s": 95},
         },
         "varying": [
             {"pointer": pointer, "spread": {"normal": {"mean": mean, "sd": sd}}} for pointer, mean, sd, _ in FIELDS
