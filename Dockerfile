@@ -9,6 +9,7 @@ WORKDIR /build
 # Dependencies first, so that they are built again only when they change.
 COPY Cargo.toml Cargo.lock ./
 COPY benches benches
+COPY experiments experiments
 RUN mkdir src \
     && echo 'fn main() {}' > src/main.rs \
     && touch src/lib.rs \

@@ -44,7 +44,6 @@ fn physics_knows_nothing_above_it() {
             "axum",
             "tokio",
             "hyper::",
-            "hyper_util",
             "tracing",
             "std::time",
             "std::env",
@@ -66,7 +65,6 @@ fn analysis_knows_nothing_above_it() {
             "axum",
             "tokio",
             "hyper::",
-            "hyper_util",
             "tracing",
             "std::time",
             "std::env",
@@ -81,6 +79,18 @@ fn only_one_place_computes_the_numbers_of_a_stream() {
         for (path, text) in sources(storey) {
             let here = path.ends_with("analysis/balance.rs");
             assert!(here || !text.contains("Numbers::of("), "{}", path.display());
+        }
+    }
+}
+
+#[test]
+fn only_one_place_asks_the_closed_form_for_a_threshold() {
+    // Elsewhere a calibration would be forgotten.
+    for storey in ["analysis", "service"] {
+        for (path, text) in sources(storey) {
+            let here = path.ends_with("analysis/balance.rs") || path.ends_with("calibration/correction.rs");
+            let asks = text.contains(".threshold_for(") || text.contains(".threshold(");
+            assert!(here || !asks, "{}", path.display());
         }
     }
 }

@@ -18,6 +18,7 @@ mod pours;
 mod problems;
 mod properties;
 mod readme;
+mod round_trip;
 mod server;
 mod shell;
 mod sockets;

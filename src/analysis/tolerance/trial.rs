@@ -152,6 +152,7 @@ impl<'a> Trial<'a> {
 pub(super) mod tests {
     use super::*;
     use crate::analysis::{
+        calibration::{Calibration, Moments, Symmetric},
         decision::decide,
         spec::{LiquidSpec, OuterFace, SectionSpec, Uncertainties},
     };
@@ -250,10 +251,28 @@ pub(super) mod tests {
         assert!(creeping > 100);
     }
 
+    fn calibration() -> Calibration {
+        let moments = Moments {
+            mean: [0.25, -0.1, 0.15],
+            covariance: Symmetric::diagonal([0.01, 0.02, 0.03]),
+            scatter_variance: 0.02,
+            ln_scatter: -2.0,
+            ln_scatter_sd: 0.2,
+        };
+        let covered = [[-1.5, -0.5], [-0.5, 0.6], [-0.2, 0.3], [4.0, 7.0], [0.0, 1.5]];
+        Calibration::new(&moments, [-0.8, 0.1], covered)
+    }
+
     /// A trial is the decider's margin, whichever fields are drawn and whatever was drawn before.
     #[test]
     fn a_trial_agrees_with_the_decider() {
-        for base in [spec(), measured(), Spec { section: SectionSpec::Tube { bore_mm: 9.0 }, ..measured() }] {
+        let calibrated = Spec { calibration: Some(calibration()), ..measured() };
+        for base in [
+            spec(),
+            measured(),
+            calibrated,
+            Spec { section: SectionSpec::Tube { bore_mm: 9.0 }, ..measured() },
+        ] {
             let fields: Vec<Field> = Field::all().filter(|f| f.get(&base).is_some()).collect();
             for skip in 0..fields.len() {
                 for count in 1..=3.min(fields.len() - skip) {
