@@ -4,14 +4,15 @@ use super::{
     calibration::{Calibration, Place},
     case::{Case, Primary, Slopes},
 };
+use crate::physics::{GRAVITY, numerics::ln};
 use crate::physics::{
     lip::{Lip, Run, Section},
     liquid::Liquid,
     separation::{
-        closed_form::{CoefficientSet, Edge, FilmTerms, RimTerms, Threshold},
+        closed_form::{CoefficientSet, Edge, FilmTerms, LnNumbers, RimTerms, Threshold, ln_critical_weber},
         numbers::{Film, Numbers},
     },
-    stream::{Control, Stream, StreamFault, approach_film},
+    stream::{Control, Stream, StreamFault, approach_film, creeps_below},
 };
 
 /// The balance at one pour rate.
@@ -126,6 +127,65 @@ pub fn place(film: &FilmTerms, (edge, rim): (&Edge, &RimTerms)) -> Place {
 pub fn balance(case: &Case, edge: &Prepared, flow: f64) -> Result<Balance, StreamFault> {
     let stream = approach_film(&case.lip.section, &case.lip.run, &case.liquid, flow)?;
     Ok(weigh(case, edge, stream, stream.thickness))
+}
+
+/// A level or rising sheet lip under one liquid: its stream is the critical section, so its numbers are powers of the pour rate per width, and the
+/// balance needs no more than their logarithms. For many pours side by side, without branches; equal to [`balance`] up to rounding.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct LevelSheet {
+    ln_density_over_tension: f64,
+    ln_density_over_viscosity: f64,
+    ln_gravity: f64,
+    ln_normal_gravity: f64,
+    creeps_below: f64,
+}
+
+impl LevelSheet {
+    /// Of this lip and liquid; `None` for another section and for a floor that falls.
+    #[must_use]
+    pub fn of(lip: &Lip, liquid: &Liquid) -> Option<Self> {
+        let (sine, cosine) = libm::sincos(lip.run.slope);
+        if sine > 0.0 || !matches!(lip.section, Section::Sheet { .. }) {
+            return None;
+        }
+        let normal_gravity = GRAVITY * cosine;
+        Some(Self {
+            ln_density_over_tension: libm::log(liquid.density / liquid.surface_tension),
+            ln_density_over_viscosity: libm::log(liquid.density / liquid.viscosity),
+            ln_gravity: libm::log(GRAVITY),
+            ln_normal_gravity: libm::log(normal_gravity),
+            // A hair more, so that rounding cannot hide a film that creeps.
+            creeps_below: creeps_below(liquid.kinematic_viscosity(), normal_gravity, sine) * (1.0 + 1e-9),
+        })
+    }
+
+    /// Whether friction thickens the stream, so that it is more than the critical section and [`Self::ln_safety_factor`] does not hold.
+    #[must_use]
+    pub fn creeps(&self, flow_per_width: f64) -> bool {
+        flow_per_width < self.creeps_below
+    }
+
+    /// ln(We/We_c) at a pour rate per width (m²/s), for an edge by its `ln_cling` and the ln of its radius in m.
+    #[inline(always)]
+    #[must_use]
+    pub fn ln_safety_factor(
+        &self,
+        set: &CoefficientSet,
+        (ln_cling, ln_radius): (f64, f64),
+        flow_per_width: f64,
+    ) -> f64 {
+        // h = (q²/g_n)^⅓, U = q/h.
+        let ln_flow = ln(flow_per_width);
+        let ln_thickness = (2.0 * ln_flow - self.ln_normal_gravity) / 3.0;
+        let ln_speed = ln_flow - ln_thickness;
+        let numbers = LnNumbers {
+            radius_ratio: ln_radius - ln_thickness,
+            reynolds: self.ln_density_over_viscosity + ln_flow,
+            froude: 2.0 * ln_speed - self.ln_gravity - ln_thickness,
+        };
+        let ln_weber = self.ln_density_over_tension + 2.0 * ln_speed + ln_thickness;
+        ln_weber - ln_critical_weber(set, ln_cling, numbers)
+    }
 }
 
 /// The numbers of the stream of `case` at pour rate `flow` (m³/s).

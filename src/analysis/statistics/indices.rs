@@ -37,12 +37,20 @@ pub const MOST_INPUTS: usize = 64;
 /// Runs worked on in one piece.
 const AT_A_TIME: u32 = 256;
 
-/// Indices of the `inputs` of a function of the unit cube; `make` makes one evaluator for each piece of work, which
-/// gives `None` where there is no result: such points are left out with all their runs. `runs` is told of runs done and
-/// says whether to go on.
+/// A function of the unit cube, for many points at a time.
+pub trait Function {
+    /// Turns coordinates of this input (above 0, below 1) into its values, in place.
+    fn place(&mut self, input: usize, coordinates: &mut [f64]);
+
+    /// The results for values that stand in columns, one for each input; NaN where there is none.
+    fn results(&mut self, columns: &[Vec<f64>], results: &mut [f64]);
+}
+
+/// Indices of the `inputs` of a function; `make` makes one for each piece of work. Points where it has no result are left
+/// out with all their runs. `runs` is told of runs done and says whether to go on.
 ///
 /// `None` when stopped, when the function does not vary, or when fewer than two points are left in a scramble.
-pub fn indices<F: FnMut(&[f64]) -> Option<f64>>(
+pub fn indices<F: Function>(
     inputs: usize,
     design: Design,
     make: impl Fn() -> F + Sync,
@@ -81,37 +89,35 @@ struct Block {
 }
 
 impl Block {
-    fn run(
-        inputs: usize,
-        seed: u32,
-        points: core::ops::Range<u32>,
-        function: &mut impl FnMut(&[f64]) -> Option<f64>,
-    ) -> Self {
+    fn run(inputs: usize, seed: u32, points: core::ops::Range<u32>, function: &mut impl Function) -> Self {
+        let count = points.len();
+        let mut columns = |from: usize| -> Vec<Vec<f64>> {
+            (0..inputs)
+                .map(|i| {
+                    // f32 numbers in [0, 1): the middle of their cells is above 0.
+                    let coordinate = |point: u32| {
+                        f64::from(sobol_burley::sample(point, (from + i) as u32, seed)) + HALF_CELL
+                    };
+                    let mut column: Vec<f64> = points.clone().map(coordinate).collect();
+                    function.place(i, &mut column);
+                    column
+                })
+                .collect()
+        };
+        let (mut at_a, mut at_b) = (columns(0), columns(inputs));
+        let mut all = vec![vec![0.0; count]; inputs + 2];
+        function.results(&at_a, &mut all[0]);
+        function.results(&at_b, &mut all[1]);
+        for i in 0..inputs {
+            core::mem::swap(&mut at_a[i], &mut at_b[i]);
+            function.results(&at_a, &mut all[i + 2]);
+            core::mem::swap(&mut at_a[i], &mut at_b[i]);
+        }
         let mut block = Self { a: Vec::new(), b: Vec::new(), mixed: Vec::new() };
-        let (mut at_a, mut at_b) = (vec![0.0; inputs], vec![0.0; inputs]);
-        for point in points {
-            // f32 numbers in [0, 1): the middle of their cells is above 0.
-            let coordinate =
-                |dimension: usize| f64::from(sobol_burley::sample(point, dimension as u32, seed)) + HALF_CELL;
-            for i in 0..inputs {
-                at_a[i] = coordinate(i);
-                at_b[i] = coordinate(inputs + i);
-            }
-            let (Some(a), Some(b)) = (function(&at_a), function(&at_b)) else { continue };
-            let before = block.mixed.len();
-            for i in 0..inputs {
-                let kept = core::mem::replace(&mut at_a[i], at_b[i]);
-                if let Some(value) = function(&at_a) {
-                    block.mixed.push(value);
-                }
-                at_a[i] = kept;
-            }
-            if block.mixed.len() == before + inputs {
-                block.a.push(a);
-                block.b.push(b);
-            } else {
-                block.mixed.truncate(before);
-            }
+        for point in (0..count).filter(|point| all.iter().all(|results| !results[*point].is_nan())) {
+            block.a.push(all[0][point]);
+            block.b.push(all[1][point]);
+            block.mixed.extend(all[2..].iter().map(|results| results[point]));
         }
         block
     }
@@ -165,28 +171,43 @@ fn summary(shares: &(impl Iterator<Item = (f64, f64)> + Clone)) -> Index {
 mod tests {
     use super::*;
 
+    struct Plain<F>(F);
+
+    impl<F: Fn(&[f64]) -> Option<f64>> Function for Plain<F> {
+        fn place(&mut self, _: usize, _: &mut [f64]) {}
+
+        fn results(&mut self, columns: &[Vec<f64>], results: &mut [f64]) {
+            for (i, result) in results.iter_mut().enumerate() {
+                let point: Vec<f64> = columns.iter().map(|c| c[i]).collect();
+                *result = (self.0)(&point).unwrap_or(f64::NAN);
+            }
+        }
+    }
+
     const DESIGN: Design = Design { points: 8192, seed: 1 };
 
     #[test]
     fn a_sum_has_no_interactions_and_a_product_has() {
-        let sum = indices(2, DESIGN, || |u: &[f64]| Some(1e6 + u[0] + 2.0 * u[1]), |_| true).unwrap();
+        let sum = indices(2, DESIGN, || Plain(|u: &[f64]| Some(1e6 + u[0] + 2.0 * u[1])), |_| true).unwrap();
         assert!((sum[0].first_order - 0.2).abs() < 0.01 && (sum[0].total - 0.2).abs() < 0.01, "{sum:?}");
         assert!((sum[1].first_order - 0.8).abs() < 0.01 && (sum[1].total - 0.8).abs() < 0.01);
         // (u − ½)(v − ½): interaction only.
-        let product = indices(2, DESIGN, || |u: &[f64]| Some((u[0] - 0.5) * (u[1] - 0.5)), |_| true).unwrap();
+        let product =
+            indices(2, DESIGN, || Plain(|u: &[f64]| Some((u[0] - 0.5) * (u[1] - 0.5))), |_| true).unwrap();
         assert!(product[0].first_order.abs() < 0.02 && (product[0].total - 1.0).abs() < 0.05, "{product:?}");
     }
 
     #[test]
     fn nothing_to_share_out() {
-        assert_eq!(indices(2, DESIGN, || |_: &[f64]| Some(3.0), |_| true), None);
-        assert_eq!(indices(2, DESIGN, || |_: &[f64]| None, |_| true), None);
-        assert_eq!(indices(1, DESIGN, || |u: &[f64]| Some(u[0]), |_| false), None);
+        assert_eq!(indices(2, DESIGN, || Plain(|_: &[f64]| Some(3.0)), |_| true), None);
+        assert_eq!(indices(2, DESIGN, || Plain(|_: &[f64]| None), |_| true), None);
+        assert_eq!(indices(1, DESIGN, || Plain(|u: &[f64]| Some(u[0])), |_| false), None);
     }
 
     #[test]
     fn points_without_result_are_left_out() {
-        let some = indices(2, DESIGN, || |u: &[f64]| (u[0] > 0.005).then(|| u[0] + u[1]), |_| true).unwrap();
+        let some =
+            indices(2, DESIGN, || Plain(|u: &[f64]| (u[0] > 0.005).then(|| u[0] + u[1])), |_| true).unwrap();
         assert!((some[0].total - 0.5).abs() < 0.03, "{some:?}");
     }
 }

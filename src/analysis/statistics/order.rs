@@ -1,5 +1,7 @@
 //! What a sample says of a limit without any distribution: by its order statistics alone.
 
+use rayon::prelude::*;
+
 use super::{StatisticsFault, proportion};
 
 /// Exact upper bound, at `confidence`, of the fraction beyond a limit when `beyond` of `pieces` values are: no
@@ -22,6 +24,22 @@ pub fn quantile_of_sorted(sorted: &[f64], probability: f64) -> Option<f64> {
     Some(sorted[below] + (place - below as f64) * (sorted[above] - sorted[below]))
 }
 
+/// The least and the largest value; infinite the wrong way round for none.
+#[must_use]
+pub fn extremes(values: &[f64]) -> (f64, f64) {
+    let wider = |(l, h): (f64, f64), (a, b): (f64, f64)| (l.min(a), h.max(b));
+    let none = (f64::INFINITY, f64::NEG_INFINITY);
+    values
+        .par_chunks(AT_A_TIME)
+        .map(|chunk| {
+            chunk.iter().fold(none, |(l, h), x| (if *x < l { *x } else { l }, if *x > h { *x } else { h }))
+        })
+        .reduce(|| none, wider)
+}
+
+/// Values looked at in one piece; no result depends on it.
+const AT_A_TIME: usize = 1 << 15;
+
 /// Bins of the first look at a large sample.
 const BINS: usize = 4096;
 
@@ -42,10 +60,24 @@ pub fn quantiles(values: &[f64], probabilities: &[f64]) -> Vec<f64> {
         return probabilities.iter().filter_map(|p| quantile_of_sorted(&sorted, *p)).collect();
     }
     let bin = |x: f64| (((x - low) * scale) as usize).min(BINS - 1);
-    let mut counts = vec![0_usize; BINS];
-    for x in values {
-        counts[bin(*x)] += 1;
-    }
+    let counts = values
+        .par_chunks(AT_A_TIME)
+        .fold(
+            || vec![0_usize; BINS],
+            |mut counts, chunk| {
+                for x in chunk {
+                    counts[bin(*x)] += 1;
+                }
+                counts
+            },
+        )
+        .reduce(
+            || vec![0; BINS],
+            |mut a, b| {
+                a.iter_mut().zip(b).for_each(|(a, b)| *a += b);
+                a
+            },
+        );
     let mut first_ranks = Vec::with_capacity(BINS);
     let mut total = 0;
     for count in &counts {
@@ -68,9 +100,14 @@ pub fn quantiles(values: &[f64], probabilities: &[f64]) -> Vec<f64> {
             kept[bin_of_rank(rank)].get_or_insert_default();
         }
     }
-    for x in values {
-        if let Some(bin) = &mut kept[bin(*x)] {
-            bin.push(*x);
+    let wanted: Vec<bool> = kept.iter().map(Option::is_some).collect();
+    let found: Vec<Vec<f64>> = values
+        .par_chunks(AT_A_TIME)
+        .map(|chunk| chunk.iter().copied().filter(|x| wanted[bin(*x)]).collect())
+        .collect();
+    for x in found.into_iter().flatten() {
+        if let Some(bin) = &mut kept[bin(x)] {
+            bin.push(x);
         }
     }
     for bin in kept.iter_mut().flatten() {

@@ -2,7 +2,7 @@
 
 use super::{spread::Drawn, trial::Trial};
 use crate::analysis::{
-    statistics::indices::{self, Design, Index},
+    statistics::indices::{self, Design, Function, Index},
     watch::{Cancelled, Watch},
 };
 
@@ -20,17 +20,24 @@ pub(super) fn drivers(
 ) -> Result<Option<Vec<Index>>, Cancelled> {
     // Both halves of the seed count.
     let design = Design { points: INDEX_POINTS, seed: (seed ^ (seed >> 32)) as u32 };
-    let make = || {
-        let mut trial = start.clone();
-        let mut values = vec![0.0; drawn.len()];
-        move |u: &[f64]| {
-            for ((value, drawn), u) in values.iter_mut().zip(drawn).zip(u) {
-                *value = drawn.at(*u);
-            }
-            trial.margin(&values)
-        }
-    };
+    let make = || Margins { trial: start.clone(), drawn };
     let found = indices::indices(drawn.len(), design, make, |runs| watch.advance(runs as usize));
     watch.look()?;
     Ok(found)
+}
+
+/// The margin as a function of the unit cube.
+struct Margins<'a> {
+    trial: Trial<'a>,
+    drawn: &'a [Drawn],
+}
+
+impl Function for Margins<'_> {
+    fn place(&mut self, input: usize, coordinates: &mut [f64]) {
+        self.drawn[input].fill(self.trial.arch(), coordinates);
+    }
+
+    fn results(&mut self, columns: &[Vec<f64>], results: &mut [f64]) {
+        self.trial.margins(columns, results);
+    }
 }

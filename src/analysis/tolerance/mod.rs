@@ -4,6 +4,7 @@
 //! model's are common to all trials and make a band of their own, apart from the sampling error.
 
 mod drivers;
+mod lanes;
 mod linear;
 mod rate;
 mod spread;

@@ -107,7 +107,7 @@ impl<'a> Rates<'a> {
 }
 
 fn count_below(margins: &[f64], margin: f64) -> u64 {
-    margins.iter().filter(|m| **m < margin).count() as u64
+    margins.par_chunks(1 << 15).map(|chunk| chunk.iter().filter(|m| **m < margin).count() as u64).sum()
 }
 
 fn counted(events: u64, trials: u64, confidence: f64) -> Result<Rate, Failure> {

@@ -2,7 +2,7 @@
 
 use crate::{
     analysis::statistics::{
-        normal::{normal_cdf, quick_quantile},
+        normal::{normal_cdf, quick_quantile, quick_quantiles},
         order::quantile_of_sorted,
     },
     physics::quantity::Quantity,
@@ -191,6 +191,23 @@ impl Drawn {
         x.max(self.low).min(self.high)
     }
 
+    /// [`Drawn::at`] of many shares, in place.
+    pub fn fill(&self, arch: pulp::Arch, shares: &mut [f64]) {
+        if let Spread::Normal { mean, sd } = &self.spread {
+            for u in shares.iter_mut() {
+                *u = (self.below + self.within * *u).min(LARGEST_SHARE);
+            }
+            quick_quantiles(arch, shares);
+            for x in shares.iter_mut() {
+                *x = (mean + sd * *x).max(self.low).min(self.high);
+            }
+        } else {
+            for u in shares.iter_mut() {
+                *u = self.at(*u);
+            }
+        }
+    }
+
     /// The value that belongs to a standard normal number; of a sample, between its values, so that slopes exist.
     #[must_use]
     pub fn smooth_at_normal(&self, z: f64) -> f64 {
@@ -245,6 +262,17 @@ mod tests {
             assert!((mean - spread.mean()).abs() < 1e-4, "{spread:?} {mean}");
             assert!((variance.sqrt() - spread.standard_deviation()).abs() < 1e-4, "{spread:?}");
             assert!(values.windows(2).all(|pair| pair[0] <= pair[1]));
+        }
+    }
+
+    #[test]
+    fn many_draws_are_the_same_as_one_by_one() {
+        for spread in all() {
+            let drawn = Drawn::new(&spread, &EDGE_RADIUS).unwrap();
+            let shares: Vec<f64> = (0..300).map(|i| (f64::from(i) + 0.5) / 300.0).collect();
+            let mut found = shares.clone();
+            drawn.fill(pulp::Arch::new(), &mut found);
+            assert!(found.iter().zip(&shares).all(|(x, u)| x.to_bits() == drawn.at(*u).to_bits()));
         }
     }
 

@@ -2,7 +2,7 @@
 
 use rayon::prelude::*;
 
-use crate::analysis::statistics::order::quantiles;
+use crate::analysis::statistics::order::{extremes, quantiles};
 
 /// Probabilities of the quantiles that are given.
 pub const QUANTILES: [f64; 9] = [0.001, 0.01, 0.025, 0.05, 0.5, 0.95, 0.975, 0.99, 0.999];
@@ -57,8 +57,7 @@ impl Summary {
 
 impl Histogram {
     fn of(margins: &[f64]) -> Self {
-        let (low, high) =
-            margins.iter().fold((f64::INFINITY, f64::NEG_INFINITY), |(l, h), x| (x.min(l), x.max(h)));
+        let (low, high) = extremes(margins);
         let width = round_step((high - low) / BINS, high.abs().max(low.abs()));
         let (first, last) = ((low / width).floor(), (high / width).floor());
         let bins = (last - first) as usize + 1;

@@ -3,6 +3,7 @@
 //! Stands on the parts of a decision ([`crate::analysis::balance`], the closed form) and computes anew only those that
 //! the drawn fields move. No slopes, no uncertainty: a trial needs the margin alone.
 
+use super::lanes::{LANES, LevelTrials};
 use crate::{
     analysis::{
         balance::{Approach, Prepared, approach, prepare, threshold},
@@ -58,6 +59,9 @@ pub struct Trial<'a> {
     properties: Properties,
     edge: Prepared,
     approach: Approach,
+    /// Where trials can be done side by side.
+    level: Option<LevelTrials>,
+    arch: pulp::Arch,
 }
 
 impl<'a> Trial<'a> {
@@ -70,14 +74,17 @@ impl<'a> Trial<'a> {
         let Resolved { case, liquid: properties, .. } = spec.resolve()?;
         let edge = prepare(&case, case.contact_angle);
         let approach = approach(&case, case.flow).map_err(stream_fault)?;
-        Ok(Self { fields, moves: Moves::of(fields, spec), spec: *spec, case, properties, edge, approach })
+        let arch = pulp::Arch::new();
+        let level = LevelTrials::new(spec, &case, fields, arch);
+        let moves = Moves::of(fields, spec);
+        Ok(Self { fields, moves, spec: *spec, case, properties, edge, approach, level, arch })
     }
 
     /// ln(safety factor) with the fields at these values; `None` where they make no case: contradicting angles, a liquid
     /// that freezes, a floor that rises more than the edge turns.
     #[inline]
     pub fn margin(&mut self, values: &[f64]) -> Option<f64> {
-        let Self { fields, moves, spec, case, properties, edge, approach: stream } = self;
+        let Self { fields, moves, spec, case, properties, edge, approach: stream, .. } = self;
         for (field, value) in fields.iter().zip(values) {
             field.set(spec, *value);
         }
@@ -105,6 +112,29 @@ impl<'a> Trial<'a> {
         }
         let threshold = threshold(set, case.calibration.as_ref(), &stream.terms, (&edge.edge, &edge.rim));
         Some(stream.ln_weber - threshold.ln_critical_weber)
+    }
+
+    /// The margins of many trials, whose values stand in columns, one for each field; NaN where they make no case.
+    pub fn margins(&mut self, columns: &[Vec<f64>], out: &mut [f64]) {
+        for (start, out) in (0..).step_by(LANES).zip(out.chunks_mut(LANES)) {
+            match &self.level {
+                Some(level) => level.margins(columns, start, out),
+                None => out.fill(f64::NAN),
+            }
+            for (i, out) in out.iter_mut().enumerate().filter(|(_, out)| out.is_nan()) {
+                let mut values = [0.0; Field::COUNT];
+                for (value, column) in values.iter_mut().zip(columns) {
+                    *value = column[start + i];
+                }
+                *out = self.margin(&values[..columns.len().min(Field::COUNT)]).unwrap_or(f64::NAN);
+            }
+        }
+    }
+
+    /// What the vector parts of a trial are dispatched by.
+    #[must_use]
+    pub fn arch(&self) -> pulp::Arch {
+        self.arch
     }
 
     /// Why values make no case: the faults of the question with the fields at these values.
@@ -170,6 +200,55 @@ pub(super) mod tests {
             },
             ..spec()
         }
+    }
+
+    /// Side by side they are the decider's margins up to rounding, and where they make no case they make none.
+    #[test]
+    fn trials_side_by_side_agree_with_single_ones() {
+        let sheet = Spec {
+            slope_deg: 0.0,
+            surface: SurfaceSpec::Measured {
+                contact_angle_deg: None,
+                advancing_deg: Some(84.0),
+                receding_deg: None,
+            },
+            ..measured()
+        };
+        let rising = Spec { slope_deg: -29.0, ..sheet };
+        let fields =
+            [Field::EdgeRadius, Field::Turn, Field::MeasuredAdvancing, Field::SheetWidth, Field::Flow];
+        let mut numbers = crate::analysis::statistics::random::Sequence::new(5, 0).from(0);
+        let mut creeping = 0;
+        for (base, level) in [(sheet, true), (rising, true), (measured(), false)] {
+            let mut trial = Trial::new(&base, &fields).unwrap();
+            assert_eq!(trial.level.is_some(), level);
+            let mut between = |low: f64, high: f64| -> Vec<f64> {
+                (0..1000).map(|_| low * libm::pow(high / low, numbers.next_open())).collect()
+            };
+            let mut columns = vec![
+                between(1e-3, 50.0),
+                between(20.0, 180.0),
+                between(1.0, 180.0),
+                between(1.0, 2000.0),
+                between(0.01, 20_000.0),
+            ];
+            columns[0][17] = 0.0;
+            columns[2][18] = 180.0;
+            let mut found = vec![0.0; 1000];
+            trial.margins(&columns, &mut found);
+            for i in 0..1000 {
+                let values: Vec<f64> = columns.iter().map(|c| c[i]).collect();
+                match trial.margin(&values) {
+                    None => assert!(found[i].is_nan()),
+                    Some(margin) => {
+                        let off = (found[i] - margin).abs();
+                        assert!(off < 1e-11 * (1.0 + margin.abs()), "{values:?} {margin} {}", found[i]);
+                        creeping += u32::from(off == 0.0);
+                    }
+                }
+            }
+        }
+        assert!(creeping > 100);
     }
 
     fn calibration() -> Calibration {

@@ -44,20 +44,22 @@ impl Trials {
                 let to = (from + AT_A_TIME).min(count);
                 let mut numbers = sequence.from(from * inputs as u64);
                 let mut trial = start.clone();
-                let mut values = vec![0.0; inputs];
-                let mut part =
-                    Self { margins: Vec::with_capacity((to - from) as usize), left_out: 0, example: None };
-                for _ in from..to {
-                    for (value, drawn) in values.iter_mut().zip(drawn) {
-                        *value = drawn.at(numbers.next_open());
+                let count = (to - from) as usize;
+                let mut columns = vec![vec![0.0; count]; inputs];
+                for i in 0..count {
+                    for column in &mut columns {
+                        column[i] = numbers.next_open();
                     }
-                    match trial.margin(&values) {
-                        Some(margin) => part.margins.push(margin),
-                        None => {
-                            part.left_out += 1;
-                            part.example.get_or_insert_with(|| values.clone());
-                        }
-                    }
+                }
+                for (column, drawn) in columns.iter_mut().zip(drawn) {
+                    drawn.fill(trial.arch(), column);
+                }
+                let mut part = Self { margins: vec![0.0; count], left_out: 0, example: None };
+                trial.margins(&columns, &mut part.margins);
+                if let Some(first) = part.margins.iter().position(|m| m.is_nan()) {
+                    part.example = Some(columns.iter().map(|column| column[first]).collect());
+                    part.margins.retain(|m| !m.is_nan());
+                    part.left_out = (count - part.margins.len()) as u64;
                 }
                 watch.advance((to - from) as usize).then_some(part).ok_or(Cancelled)
             })

@@ -54,9 +54,10 @@ pub fn ln(x: f64) -> f64 {
     s * (half_square + (odd + even)) + k * LN2_LOW - half_square + f + k * LN2_HIGH
 }
 
-/// e^x for −708 ≤ x ≤ 700.
+/// e^x for −708 ≤ x ≤ 700; of any other number nothing is promised.
 #[inline(always)]
-fn exp(x: f64) -> f64 {
+#[must_use]
+pub fn exp(x: f64) -> f64 {
     // 1.5 · 2^52: adding it rounds to a whole number, which then stands in the last digits.
     const ROUND: f64 = 6_755_399_441_055_744.0;
     let rounded = x * core::f64::consts::LOG2_E + ROUND;
@@ -77,6 +78,39 @@ fn exp(x: f64) -> f64 {
             ],
         );
     scale * (1.0 + (r * c / (2.0 - c) - low + high))
+}
+
+/// sin x for 0 ≤ x ≤ π/2, to a few units of the last digit: Taylor's series up to x²³, whose next term is below 1e-19.
+#[inline(always)]
+#[must_use]
+pub fn quarter_sine(x: f64) -> f64 {
+    const fn term(n: u32) -> f64 {
+        let mut product = if n % 2 == 1 { -1.0 } else { 1.0 };
+        let mut i = 2;
+        while i <= 2 * n + 1 {
+            product *= i as f64;
+            i += 1;
+        }
+        1.0 / product
+    }
+    let square = x * x;
+    let beyond = polynomial(
+        square,
+        [
+            const { term(1) },
+            const { term(2) },
+            const { term(3) },
+            const { term(4) },
+            const { term(5) },
+            const { term(6) },
+            const { term(7) },
+            const { term(8) },
+            const { term(9) },
+            const { term(10) },
+            const { term(11) },
+        ],
+    );
+    x + x * square * beyond
 }
 
 /// Beyond this argument erfc is below 1e-305 and taken for 0.
@@ -242,6 +276,14 @@ mod tests {
         for i in -7000..6900 {
             let x = f64::from(i) * 0.1007;
             assert!(units(exp(x), libm::exp(x)) <= 2, "exp {x}");
+        }
+    }
+
+    #[test]
+    fn sine_of_the_first_quarter() {
+        for i in 0..=10_000 {
+            let x = core::f64::consts::FRAC_PI_2 * f64::from(i) / 10_000.0;
+            assert!(units(quarter_sine(x), libm::sin(x)) <= 2, "sin {x}");
         }
     }
 

@@ -6,7 +6,7 @@ mod normal;
 mod quadrature;
 mod root;
 
-pub use lanes::{ln, normal_cdf};
+pub use lanes::{exp, ln, normal_cdf, quarter_sine};
 pub use normal::{ln_normal_cdf, normal_hazard_below, normal_quantile};
 pub use quadrature::gauss_legendre_8;
 pub use root::{Bracket, find_root};

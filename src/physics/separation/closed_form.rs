@@ -6,7 +6,10 @@
 //! the approach film ([`super::numbers`]). As r/h → 0 and without gravity it keeps the shape of the sharp-edge balance ([`super`]).
 
 use super::numbers::Numbers;
-use crate::physics::{numerics::ln, quantity::DEGREE};
+use crate::physics::{
+    numerics::{exp, ln, quarter_sine},
+    quantity::DEGREE,
+};
 
 /// A named set of coefficients of the closed form, with the region it was fitted in.
 ///
@@ -224,6 +227,46 @@ impl Edge {
     }
 }
 
+/// Numbers of a stream at an edge, in logarithms.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct LnNumbers {
+    /// ln(r/h); of an ideally sharp edge any number below −300.
+    pub radius_ratio: f64,
+    /// ln Re.
+    pub reynolds: f64,
+    /// ln Fr.
+    pub froude: f64,
+}
+
+/// ln of E^p (1 − cos α)^−m for contact angle θ (rad, 0 to π) and turn α (rad, above 0 to π): what does not change along a pour.
+///
+/// E = 2 cos²(θ/2), 1 − cos α = 2 sin²(α/2). Without branches, for many edges side by side; at θ = π it is about −600 rather than −∞.
+#[inline(always)]
+#[must_use]
+pub fn ln_cling(set: &CoefficientSet, contact_angle: f64, turn: f64) -> f64 {
+    let cosine = quarter_sine(0.5 * (core::f64::consts::PI - contact_angle)).max(1e-120);
+    let sine = quarter_sine(0.5 * turn);
+    set.wetting_exponent * (LN_2 + 2.0 * ln(cosine)) - set.turn_exponent * (LN_2 + 2.0 * ln(sine))
+}
+
+/// ln We_c alone, without its slopes: the same closed form as [`Edge::threshold`], without branches, for many streams side by side. Equal to it up
+/// to rounding, for numbers that do not leave the range of doubles.
+#[inline(always)]
+#[must_use]
+pub fn ln_critical_weber(set: &CoefficientSet, ln_cling: f64, numbers: LnNumbers) -> f64 {
+    // Below this a term has vanished beside 1.
+    const VANISHED: f64 = -700.0;
+    let power = |x: f64| exp(x.max(VANISHED));
+    let ln_viscous = LN_100 - numbers.reynolds;
+    let [a, b, c] = set.radius;
+    let [d, e, f, g, k] = set.gravity;
+    let radius = a * power(b * numbers.radius_ratio + c * ln_viscous);
+    let fall = power(g * ln_viscous - k * numbers.froude);
+    let blunt = e * power(f * numbers.radius_ratio);
+    let bracket = 1.0 + radius + (d + blunt) * fall;
+    ln((1.0 + power(ln_cling) * bracket) / set.momentum)
+}
+
 /// The stream's share of the closed form: the same whatever edge the stream meets.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct FilmTerms {
@@ -424,6 +467,30 @@ mod tests {
             prop_assert!(d.by_turn <= 1e-12 && d.by_turn.is_finite());
             prop_assert!(d.by_ln_reynolds <= 0.0 && d.by_ln_reynolds.is_finite());
             prop_assert!(d.by_ln_froude <= 0.0 && d.by_ln_froude.is_finite());
+        }
+    }
+
+    #[test]
+    fn the_threshold_in_logarithms_is_the_threshold() {
+        for theta in [0.0, 1.0, 40.0, 90.0, 150.0, 179.0, 180.0] {
+            for alpha in [20.0, 90.0, 125.0, 180.0] {
+                for r in [0.0, 0.01, 0.5, 20.0] {
+                    for (re, fr) in [(0.5, 0.4), (30.0, 1.0), (2e4, 300.0)] {
+                        let plain = ln_critical(theta, alpha, &numbers(r, re, fr));
+                        let ln_numbers = LnNumbers {
+                            radius_ratio: libm::log(r).max(-690.0),
+                            reynolds: libm::log(re),
+                            froude: libm::log(fr),
+                        };
+                        let cling = ln_cling(&SET_1, theta * DEGREE, alpha * DEGREE);
+                        let found = ln_critical_weber(&SET_1, cling, ln_numbers);
+                        assert!(
+                            (found - plain).abs() < 1e-12 * (1.0 + plain.abs()),
+                            "{theta} {alpha} {r} {re} {found} {plain}"
+                        );
+                    }
+                }
+            }
         }
     }
 

@@ -89,6 +89,16 @@ pub(super) fn may_creep(
         || friction_slope(section, depth, flow, kinematic_viscosity) > driving
 }
 
+/// Pour rate per width, m²/s, below which a film at its critical depth on a level or rising floor creeps, so that friction thickens it.
+///
+/// [`friction_slope`] at h³ = q²/g_n, 3νg_n/(gq), above the driving slope: `gravity` g_n normal to the floor, m/s²; `sine` of the floor's slope, at
+/// most 0.
+#[must_use]
+pub fn creeps_below(kinematic_viscosity: f64, gravity: f64, sine: f64) -> f64 {
+    const SHEET: Section = Section::Sheet { width: 1.0 };
+    SHEET.friction_constant() * kinematic_viscosity * gravity / (GRAVITY * brink_driving(sine))
+}
+
 /// Flow area, m², of a viscous film under a driving slope; more than the bore where a tube cannot carry the
 /// flow.
 ///

@@ -56,7 +56,7 @@ pub use brink::{brink_ratio, end_depth_ratio};
 pub use critical::{critical_depth, critical_flow, critical_head, start_head};
 pub use flags::Flags;
 pub use free_stream::{Launch, ballistic_distance, jet_distance, sheet_distance};
-pub use friction::{friction_slope, normal_depth};
+pub use friction::{creeps_below, friction_slope, normal_depth};
 pub use rating::{rated_flow, sill_height};
 pub use sheet::depth_after as sheet_depth_after;
 pub use tube::{CAVITY_SPEED, FULL_BOND};

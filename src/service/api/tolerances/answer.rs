@@ -20,7 +20,7 @@ pub struct TolerancesAnswer<'a> {
     /// Pours that dribble, per million.
     pub dribble_ppm: RateAnswer,
     /// The same at either end of what is not known of everything that does not vary, and of the models: common to all pours, so no number of trials
-    /// narrows it. At the base's confidence.
+    /// narrows it. At the base's confidence; 0 where not one trial lies so far out.
     pub dribble_ppm_with_model_doubt: DoubtAnswer,
     /// Sobol' indices of the margin, in the order of `varying`; null when the margin does not vary. They are shares of its variance, and say little about rare
     /// events far out in the tail.
